@@ -21,6 +21,7 @@ __all__ = [
     "Product",
     "Quotient",
     "Sum",
+    "children",
     "integer",
     "names_in",
     "negated",

@@ -1,0 +1,144 @@
+"""Polynomials in the variable with coefficients in the letters: degree, content, gcd, factors."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+from symplant.algebra.ring import Element, Ring
+
+__all__ = ["Polynomial"]
+
+
+@dataclass(frozen=True)
+class Polynomial:
+    """An element of the ring in normal form, seen as a polynomial in the variable.
+
+    >>> ring = Ring("s", ("m", "k"))
+    >>> p = Polynomial.of(ring, ring.gen("m") * ring.gen("s") ** 2 + ring.gen("k"))
+    >>> p.degree, p.leading, p.coefficients
+    (2, m, (k, 0, m))
+    """
+
+    ring: Ring
+    element: Element
+
+    @classmethod
+    def of(cls, ring: Ring, element: Element) -> Polynomial:
+        """Bring an element to normal form and wrap it."""
+        return cls(ring, ring.reduce(element))
+
+    @classmethod
+    def constant(cls, ring: Ring, value: int) -> Polynomial:
+        """A constant polynomial."""
+        return cls(ring, ring.constant(value))
+
+    @cached_property
+    def coefficients(self) -> tuple[Element, ...]:
+        """Ascending coefficients, free of the variable; empty for the zero polynomial."""
+        return tuple(self.ring.coefficients(self.element))
+
+    @property
+    def degree(self) -> int:
+        """Degree in the variable for generic letters; -1 for the zero polynomial."""
+        return len(self.coefficients) - 1
+
+    @property
+    def leading(self) -> Element:
+        """The coefficient of the highest power (zero for the zero polynomial)."""
+        return self.coefficients[-1] if self.coefficients else self.ring.zero
+
+    @property
+    def is_zero(self) -> bool:
+        """Whether the polynomial vanishes identically."""
+        return not self.element
+
+    def content(self) -> Element:
+        """A greatest common divisor of the coefficients, first coefficient positive; 0 for zero."""
+        return content(self.ring, self.coefficients)
+
+    def primitive(self) -> Polynomial:
+        """The polynomial without its content."""
+        if self.is_zero:
+            return self
+        return Polynomial(self.ring, self.element // self.content())
+
+    def gcd(self, other: Polynomial) -> Polynomial:
+        """Greatest common divisor as polynomials in the variable (factors free of it left out).
+
+        Generic in the letters: the result is the common factor for almost all values; where the
+        degree of the gcd jumps, a resultant vanishes, and that is the business of the case book.
+
+        >>> ring = Ring("s", ("a", "b"))
+        >>> s, a, b = (ring.gen(x) for x in "sab")
+        >>> Polynomial.of(ring, a * (s + a) * s).gcd(Polynomial.of(ring, b * (s + a))).element
+        s + a
+        """
+        if self.is_zero:
+            return other.primitive()._positive()
+        if other.is_zero:
+            return self.primitive()._positive()
+        if self.ring.has_relations:
+            return _euclid(self, other)
+        return Polynomial(self.ring, self.element.gcd(other.element)).primitive()._positive()
+
+    def factors(self) -> tuple[int, list[tuple[Element, int]]]:
+        """Integer content and irreducible factors with their exponents.
+
+        In a ring with relations the factors multiply to the polynomial, but may factor further.
+        """
+        if self.is_zero:
+            return 0, []
+        content_, found = self.element.factor()
+        return int(content_), [(factor, int(exponent)) for factor, exponent in found]
+
+    def _positive(self) -> Polynomial:
+        if self.element and self.ring.terms(self.leading)[0][0] < 0:
+            return Polynomial(self.ring, -self.element)
+        return self
+
+
+def content(ring: Ring, elements: Sequence[Element]) -> Element:
+    """A greatest common divisor of elements in the polynomial ring; 0 for none."""
+    result = ring.zero
+    for element in elements:
+        result = result.gcd(element)
+        if result.is_one():
+            break
+    return result
+
+
+def _euclid(first: Polynomial, second: Polynomial) -> Polynomial:
+    """Primitive remainder sequence in the quotient ring (a domain), every step in normal form."""
+    ring = first.ring
+    high, low = first.primitive(), second.primitive()
+    if high.degree < low.degree:
+        high, low = low, high
+    while not low.is_zero:
+        if low.degree == 0:
+            return Polynomial.constant(ring, 1)
+        high, low = low, _pseudo_remainder(high, low).primitive()
+    return _rationalised(high)._positive()
+
+
+def _pseudo_remainder(high: Polynomial, low: Polynomial) -> Polynomial:
+    ring, s = high.ring, high.ring.gen(high.ring.variable)
+    rest = high
+    while rest.degree >= low.degree:
+        shift = s ** (rest.degree - low.degree)
+        rest = Polynomial.of(ring, rest.element * low.leading - low.element * rest.leading * shift)
+    return rest
+
+
+def _rationalised(polynomial: Polynomial) -> Polynomial:
+    """Multiply by conjugates until no generator with a relation is left in the first coefficient."""
+    ring = polynomial.ring
+    for function in reversed(ring.functions):
+        if function.square is None:
+            continue
+        parts = ring.coefficients(polynomial.leading, function.key)
+        if len(parts) == 2:
+            conjugate = parts[0] - parts[1] * ring.gen(function.key)
+            polynomial = Polynomial.of(ring, polynomial.element * conjugate).primitive()
+    return polynomial
