@@ -37,7 +37,7 @@ def vector(argument: Ratio) -> Vector:
     """
     ring = argument.ring
     # An integer factor of the denominator belongs to the coordinate, not to the direction.
-    content = int(argument.denominator.content())
+    content = abs(int(argument.denominator.primitive()[0]))
     bottom = argument.denominator // ring.constant(content)
     _, key = ratio_key(Ratio(ring, ring.one, bottom))
     result: Vector = {}
@@ -130,9 +130,7 @@ class AngleGroup:
             key = ratio_key(argument)
             if turn is not None:
                 if (2 * turn).denominator != 1:
-                    faults.append(
-                        _fault(place, call, "a multiple of pi that is not known in closed form")
-                    )
+                    faults.append(_fault(place, call, "a multiple of pi that is not known in closed form"))
                     continue
                 self.quarter_turns[key] = int(2 * turn) % 4
                 parts = {k: v for k, v in parts.items() if k[1] != (("pi", 1),)}
@@ -153,9 +151,7 @@ class AngleGroup:
                 fresh.append(parts)
                 coordinates = [Fraction(0)] * (old + len(fresh) - 1) + [Fraction(1)]
             combined.append((key, coordinates))
-        steps = [
-            lcm(*(c[j].denominator for _, c in combined if j < len(c))) for j in range(old + len(fresh))
-        ]
+        steps = [lcm(*(c[j].denominator for _, c in combined if j < len(c))) for j in range(old + len(fresh))]
         if any(step != 1 for step in steps[:old]):
             place, call, _ = members[0]
             return [], [_fault(place, call, "a fraction of an angle used inside another function")], note
@@ -174,16 +170,16 @@ class AngleGroup:
             self.basis.append(({k: v / steps[old + index] for k, v in parts.items()}, names))
         return generators, faults, note
 
-    def _generators(
-        self, angle: Ratio, number: int, rich: bool
-    ) -> tuple[tuple[str, ...], list[Generator]]:
+    def _generators(self, angle: Ratio, number: int, rich: bool) -> tuple[tuple[str, ...], list[Generator]]:
         tree = ratio_tree(angle)
         if self.kind == "hyperbolic" and not rich:
             name = f"_exp{number}"
             return (name,), [Generator(name, Call("exp", tree), Sign.POSITIVE, None, "exp", tree)]
         first, second = ("cos", "sin") if self.kind == "circular" else ("cosh", "sinh")
         names = (f"_{first}{number}", f"_{second}{number}")
-        relation = {(0,): 1, (2,): -1} if self.kind == "circular" else {(0,): -1, (2,): 1}
+        relation: dict[tuple[int, ...], int] = (
+            {(0,): 1, (2,): -1} if self.kind == "circular" else {(0,): -1, (2,): 1}
+        )
         even = Sign.REAL if self.kind == "circular" else Sign.POSITIVE
         return names, [
             Generator(names[0], Call(first, tree), even, None, first, tree),
@@ -198,7 +194,7 @@ class AngleGroup:
             return self._hyperbolic(ring, multiples)
         cosine, sine = ring.one, ring.zero
         for multiple, (_, names) in zip(multiples, self.basis, strict=False):
-            c, s = _multiple(ring, *names, abs(multiple), -1)
+            c, s = _multiple(ring, names, abs(multiple), -1)
             s = s if multiple >= 0 else -s
             cosine, sine = cosine * c - sine * s, sine * c + cosine * s
         for _ in range(self.quarter_turns.get(key, 0)):
@@ -214,7 +210,7 @@ class AngleGroup:
                 pairs = False
                 grown = grown * Ratio.of(ring, ring.gen(names[0])) ** multiple
                 continue
-            c, s = _multiple(ring, *names, abs(multiple), 1)
+            c, s = _multiple(ring, names, abs(multiple), 1)
             s = s if multiple >= 0 else -s
             even, odd = even * c + odd * s, odd * c + even * s
         grown = grown * Ratio.of(ring, even + odd)
@@ -226,11 +222,9 @@ class AngleGroup:
         return {"exp": grown, "cosh": cosh, "sinh": sinh, "tanh": sinh / cosh}
 
 
-def _multiple(
-    ring: Ring, first: str, second: str, count: int, square: int
-) -> tuple[Element, Element]:
+def _multiple(ring: Ring, names: Sequence[str], count: int, square: int) -> tuple[Element, Element]:
     """cos and sin (square = -1), or cosh and sinh (square = 1), of `count` times a basis angle."""
-    c, s = ring.gen(first), ring.gen(second)
+    c, s = ring.gen(names[0]), ring.gen(names[1])
     even, odd = ring.one, ring.zero
     for _ in range(count):
         even, odd = ring.reduce(even * c + square * odd * s), ring.reduce(odd * c + even * s)
@@ -281,5 +275,3 @@ def _scaled_ratio(
 def _fault(place: str, call: Call, reason: str) -> Fault:
     where = f"{place}, column {call.column}" if call.column else place
     return Fault(where, f"{call.function} of {reason}", "give it a letter of its own")
-
-

@@ -168,9 +168,7 @@ class _Builder:
         self.ring = Ring(old.variable, old.letters, old.box, (*old.functions, *new), undecidable)
         self.calls = {key: _adopt(self.ring, value) for key, value in self.calls.items()}
 
-    def _transcendental(
-        self, found: Sequence[tuple[str, Call, Ratio]]
-    ) -> tuple[list[Generator], str]:
+    def _transcendental(self, found: Sequence[tuple[str, Call, Ratio]]) -> tuple[list[Generator], str]:
         """Generators for logarithms and inverse tangents: one for each distinct argument."""
         new: list[Generator] = []
         for _place, call, argument in found:
@@ -194,6 +192,4 @@ class _Builder:
 def _adopt(ring: Ring, ratio: Ratio) -> Ratio:
     if ratio.ring is ring:
         return ratio
-    return Ratio(
-        ring, ring.adopt(ratio.numerator, ratio.ring), ring.adopt(ratio.denominator, ratio.ring)
-    )
+    return Ratio(ring, ring.adopt(ratio.numerator, ratio.ring), ring.adopt(ratio.denominator, ratio.ring))

@@ -52,14 +52,10 @@ class Ratio:
         )
 
     def __mul__(self, other: Ratio) -> Ratio:
-        return Ratio.of(
-            self.ring, self.numerator * other.numerator, self.denominator * other.denominator
-        )
+        return Ratio.of(self.ring, self.numerator * other.numerator, self.denominator * other.denominator)
 
     def __truediv__(self, other: Ratio) -> Ratio:
-        return Ratio.of(
-            self.ring, self.numerator * other.denominator, self.denominator * other.numerator
-        )
+        return Ratio.of(self.ring, self.numerator * other.denominator, self.denominator * other.numerator)
 
     def __neg__(self) -> Ratio:
         return Ratio(self.ring, -self.numerator, self.denominator)

@@ -138,9 +138,7 @@ class Ring:
         """An element of another ring whose generators all exist here."""
         if source is self:
             return element
-        return self.element(
-            source.keys, {tuple(map(int, e)): int(c) for e, c in element.to_dict().items()}
-        )
+        return self.element(source.keys, {tuple(map(int, e)): int(c) for e, c in element.to_dict().items()})
 
     def coefficients(self, element: Element, key: str | None = None) -> list[Element]:
         """Coefficients in one generator (default: the variable), ascending; [] for zero.
@@ -181,9 +179,7 @@ class Ring:
             row = tuple(int(exponents[place]) for place in order)
             rows.append((row[-1], row, int(value)))
         rows.sort(key=lambda item: (item[0], item[1]), reverse=True)
-        return [
-            (value, tuple((order[i], e) for i, e in enumerate(row) if e)) for _, row, value in rows
-        ]
+        return [(value, tuple((order[i], e) for i, e in enumerate(row) if e)) for _, row, value in rows]
 
     def used(self, elements: Iterable[Element]) -> set[str]:
         """Keys of the generators that occur in any of the elements."""

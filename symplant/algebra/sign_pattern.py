@@ -58,5 +58,3 @@ def _lone_term(ring: Ring, element: Element) -> Sign:
     ((exponents, value),) = element.terms()
     start = Sign.POSITIVE if int(value) > 0 else Sign.NEGATIVE
     return reduce(mul, (ring.signs[i] ** int(e) for i, e in enumerate(exponents) if e), start)
-
-
