@@ -6,9 +6,14 @@ from collections.abc import Iterable
 from fractions import Fraction
 
 from symplant.algebra.expression import Call, Name, Node, Number, Power, Product, Quotient, Sum
+from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring, Term
 
-__all__ = ["element_text", "node_text", "polynomial_text"]
+__all__ = ["element_text", "factored_text", "node_text", "polynomial_text", "ratio_text"]
+
+#: Elements of more terms than this are not factored for printing: the factorisation would cost more
+#: than everything else, and nobody reads its outcome.
+FACTOR_LIMIT = 2_000
 
 _SUM, _PRODUCT, _POWER, _ATOM = range(4)
 
@@ -57,6 +62,64 @@ def polynomial_text(ring: Ring, element: Element) -> str:
             place = ring.position[ring.variable]
             parts.append(term_text(ring, (value, (*exponents, (place, power)))))
     return _joined(parts)
+
+
+def factored_text(ring: Ring, element: Element) -> str:
+    """An element as a product of its irreducible factors, each collected in the variable.
+
+    Elements above `FACTOR_LIMIT` terms are given collected instead.
+
+    >>> ring = Ring("s", ("a", "k"))
+    >>> s, a, k = (ring.gen(x) for x in "sak")
+    >>> factored_text(ring, -2 * k * (s + a) ** 2)
+    '-2*k*(s + a)**2'
+    """
+    if len(element) > FACTOR_LIMIT or not element:
+        return polynomial_text(ring, element)
+    content, found = element.factor()
+    value, factors = int(content), []
+    for factor, exponent in found:
+        if ring.terms(factor)[0][0] < 0:
+            factor, value = -factor, value * (-1) ** int(exponent)
+        factors.append((len(factor), ring.terms(factor), factor, int(exponent)))
+    if len(factors) == 1 and factors[0][3] == 1 and abs(value) == 1:
+        return polynomial_text(ring, element)
+    # Single letters first, in the declared order; then sums, the shortest first.
+    factors.sort(key=lambda item: (item[0] > 1, item[0], [-e for e in _exponent_row(ring, item[1][0])]))
+    parts = []
+    for size, _, factor, exponent in factors:
+        text = polynomial_text(ring, factor)
+        if size > 1 or (exponent > 1 and not _is_plain(text)):
+            text = f"({text})"
+        parts.append(text if exponent == 1 else f"{text}**{exponent}")
+    if abs(value) != 1 or not parts:
+        parts.insert(0, str(abs(value)))
+    return ("-" if value < 0 else "") + "*".join(parts)
+
+
+def ratio_text(ratio: Ratio) -> str:
+    """A ratio, both parts factored.
+
+    >>> ring = Ring("s", ("k", "m"))
+    >>> ratio_text(Ratio.of(ring, ring.gen("k"), 2 * ring.gen("m")))
+    'k/(2*m)'
+    """
+    top = factored_text(ratio.ring, ratio.numerator)
+    if ratio.denominator.is_one():
+        return top
+    bottom = factored_text(ratio.ring, ratio.denominator)
+    if len(ratio.numerator) > 1 and ("+" in top or " - " in top):
+        top = top if top.endswith(")") and top.startswith("(") and top.count("(") == 1 else f"({top})"
+    return f"{top}/{bottom if _is_plain(bottom) else f'({bottom})'}"
+
+
+def _is_plain(text: str) -> bool:
+    return text.isidentifier() or text.isdecimal()
+
+
+def _exponent_row(ring: Ring, term: Term) -> list[int]:
+    powers = dict(term[1])
+    return [powers.get(place, 0) for place in ring.print_order]
 
 
 def term_text(ring: Ring, term: Term) -> str:
