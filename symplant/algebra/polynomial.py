@@ -94,7 +94,7 @@ class Polynomial:
         return int(content_), [(factor, int(exponent)) for factor, exponent in found]
 
     def _positive(self) -> Polynomial:
-        if self.element and self.ring.terms(self.leading)[0][0] < 0:
+        if self.ring.is_led_negative(self.element):
             return Polynomial(self.ring, -self.element)
         return self
 

@@ -181,6 +181,19 @@ class Ring:
         rows.sort(key=lambda item: (item[0], item[1]), reverse=True)
         return [(value, tuple((order[i], e) for i, e in enumerate(row) if e)) for _, row, value in rows]
 
+    def is_led_negative(self, element: Element) -> bool:
+        """Whether the first term of an element, as written, has a minus sign.
+
+        >>> ring = Ring("s", ("m", "k"))
+        >>> ring.is_led_negative(ring.gen("k") - ring.gen("m"))
+        True
+        """
+        if not element:
+            return False
+        if not self.functions:  # the order of the ring is the order of writing
+            return int(element.leading_coefficient()) < 0
+        return self.terms(self.coefficients(element)[-1])[0][0] < 0
+
     def used(self, elements: Iterable[Element]) -> set[str]:
         """Keys of the generators that occur in any of the elements."""
         found: set[int] = set()

@@ -79,7 +79,7 @@ def factored_text(ring: Ring, element: Element) -> str:
     content, found = element.factor()
     value, factors = int(content), []
     for factor, exponent in found:
-        if ring.terms(factor)[0][0] < 0:
+        if ring.is_led_negative(factor):
             factor, value = -factor, value * (-1) ** int(exponent)
         factors.append((len(factor), ring.terms(factor), factor, int(exponent)))
     if len(factors) == 1 and factors[0][3] == 1 and abs(value) == 1:

@@ -200,12 +200,12 @@ def _signed(
     if not content:
         return elements, (multiplier, below)
     last = next(element for element in reversed(elements) if element)
-    if ring.terms(ring.coefficients(last)[-1])[0][0] < 0:
+    if ring.is_led_negative(last):
         content = -content
     elements = [element // content for element in elements]
     common = multiplier.gcd(content)
     multiplier, content = multiplier // common, content // common
-    if ring.terms(content)[0][0] < 0:
+    if ring.is_led_negative(content):
         multiplier, content = -multiplier, -content
     return elements, (multiplier, content * below)
 

@@ -117,7 +117,7 @@ def irreducible_factors(ring: Ring, elements: Iterable[Element]) -> list[Element
             (factor for factor, _ in element.factor()[1]), key=lambda f: ring.terms(f), reverse=True
         )
         for factor in factors:
-            positive = factor if ring.terms(factor)[0][0] > 0 else -factor
+            positive = -factor if ring.is_led_negative(factor) else factor
             found.setdefault(str(positive), positive)
     return list(found.values())
 

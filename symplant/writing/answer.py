@@ -1,0 +1,192 @@
+"""Machine answers: findings as plain data in the shape of the JSON contract."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from fractions import Fraction
+from typing import TYPE_CHECKING, Any, TypeAlias
+
+from symplant.algebra.text import element_text, factored_text, node_text, polynomial_text, ratio_text
+from symplant.algebra.verdict import Check
+
+if TYPE_CHECKING:
+    from symplant.algebra.polynomial import Polynomial
+    from symplant.algebra.ratio import Ratio
+    from symplant.algebra.ring import Element, Ring
+    from symplant.derivation.derive import Derivation
+    from symplant.derivation.stability import StabilityFinding
+    from symplant.errors import Fault
+    from symplant.plant.model import Model
+
+__all__ = [
+    "FORMAT",
+    "Answer",
+    "check_rows",
+    "derive_answer",
+    "fault_answer",
+    "polynomial_answer",
+    "stability_answer",
+]
+
+#: Version of the shape of every answer.
+FORMAT = 1
+
+Answer: TypeAlias = "dict[str, Any]"
+#: How an element is written in LaTeX.
+Latex: TypeAlias = "Callable[[Ring, Element], str]"
+
+
+def plant_answer(model: Model) -> Answer:
+    """The plant as every answer repeats it: names, units, what is known of the letters."""
+    return {
+        "title": model.title,
+        "time": "discrete" if model.discrete else "continuous",
+        "variable": model.variable,
+        "states": [signal.name for signal in model.states],
+        "inputs": [signal.name for signal in model.inputs],
+        "outputs": [signal.name for signal in model.outputs],
+        "parameters": [
+            {
+                "name": p.name,
+                "latex": p.latex or None,
+                "unit": p.unit,
+                "nominal": _number(p.nominal),
+                "range": None if p.lower is None or p.upper is None else [_number(p.lower), _number(p.upper)],
+                "sign": p.interval.sign.value,
+                "about": p.about,
+            }
+            for p in model.parameters
+        ],
+    }
+
+
+def polynomial_answer(polynomial: Polynomial, latex: Latex) -> Answer:
+    """POLY of the contract: ascending coefficients, the whole, the whole factored, LaTeX."""
+    ring, element = polynomial.ring, polynomial.element
+    return {
+        "variable": ring.variable,
+        "coefficients": [element_text(ring, c) for c in polynomial.coefficients] or ["0"],
+        "expression": polynomial_text(ring, element),
+        "factored": factored_text(ring, element),
+        "latex": latex(ring, element),
+    }
+
+
+def derive_answer(derivation: Derivation, checks: Sequence[Check], latex: Latex) -> Answer:
+    """The answer of `derive`."""
+    ring = derivation.ring
+    characteristic, zero = derivation.characteristic_polynomial, derivation.zero_polynomial
+    written: dict[int, Answer] = {}
+
+    def poly(polynomial: Polynomial) -> Answer:
+        # Channels share denominators; a long one is written once.
+        key = id(polynomial.element)
+        if key not in written:
+            written[key] = polynomial_answer(polynomial, latex)
+        return written[key]
+
+    answer: Answer = {
+        **_head("derive", derivation.model),
+        "characteristic_polynomial": {
+            **poly(characteristic.polynomial),
+            "multiplier": _multiplier(ring, characteristic.multiplier),
+        },
+        "channels": [
+            {
+                "output": channel.output.name,
+                "input": channel.input.name,
+                "numerator": poly(channel.numerator),
+                "denominator": poly(channel.denominator),
+                "common_factor": poly(channel.common_factor),
+                "relative_degree": channel.relative_degree,
+                "multiplier": _multiplier(ring, channel.multiplier),
+            }
+            for channel in derivation.channels
+        ],
+        "zero_polynomial": None
+        if zero is None
+        else {**poly(zero.polynomial), "multiplier": _multiplier(ring, zero.multiplier)},
+    }
+    if derivation.zero_polynomial_note:
+        answer["zero_polynomial_note"] = derivation.zero_polynomial_note
+    answer["assumed_nonzero"] = [polynomial_text(ring, element) for element in derivation.assumed_nonzero]
+    answer["assumed_domain"] = [
+        f"{node_text(tree)} {relation} 0" for tree, relation in derivation.pencil.setting.domain
+    ]
+    if ring.undecidable:
+        answer["undecided_equality"] = ring.undecidable
+    answer["checks"] = check_rows(checks)
+    return answer
+
+
+def stability_answer(
+    finding: StabilityFinding, model: Model, checks: Sequence[Check], latex: Latex
+) -> Answer:
+    """The answer of `stability`."""
+    ring = finding.polynomial.ring
+    return {
+        **_head("stability", model),
+        "verdict": str(finding.verdict),
+        "because": finding.because,
+        "conditions": [
+            {
+                "expression": factored_text(ring, condition.element),
+                "relation": condition.relation,
+                "latex": latex(ring, condition.element) + f" {condition.relation} 0",
+                "status": condition.status,
+                "because": condition.because,
+                "name": condition.name,
+            }
+            for condition in finding.conditions
+        ],
+        "crossings": [
+            {
+                "expression": factored_text(ring, crossing.element),
+                "at": crossing.at,
+                "frequency_squared": _ratio(crossing.frequency_squared),
+            }
+            for crossing in finding.crossings
+        ],
+        "witnesses": {
+            side: None if point is None else {name: str(value) for name, value in point.items()}
+            for side, point in finding.witnesses.items()
+        },
+        "notes": list(finding.notes),
+        "checks": check_rows(checks),
+    }
+
+
+def check_rows(checks: Sequence[Check]) -> list[Answer]:
+    """The checks as data."""
+    return [
+        {"what": c.what, "method": c.method, "verdict": str(c.verdict), "detail": c.detail} for c in checks
+    ]
+
+
+def fault_answer(command: str, faults: Sequence[Fault]) -> Answer:
+    """What a machine is told about input at fault."""
+    return {
+        "format": FORMAT,
+        "command": command,
+        "faults": [
+            {"file": f.file, "place": f.place, "reason": f.reason, "suggestion": f.suggestion} for f in faults
+        ],
+    }
+
+
+def _head(command: str, model: Model) -> Mapping[str, Any]:
+    return {"format": FORMAT, "command": command, "plant": plant_answer(model)}
+
+
+def _multiplier(ring: Ring, multiplier: tuple[Element, Element]) -> str:
+    top, bottom = (factored_text(ring, part) for part in multiplier)
+    return top if bottom == "1" else f"({top})/({bottom})"
+
+
+def _number(value: Fraction | None) -> str | None:
+    """An exact number as text: JSON's own numbers would be rounded by most readers."""
+    return None if value is None else str(value)
+
+
+def _ratio(ratio: Ratio | None) -> str | None:
+    return None if ratio is None else ratio_text(ratio)
