@@ -14,7 +14,7 @@ from symplant.errors import Fault, InputError
 from symplant.plant.model import Model
 from symplant.plant.parameter import Signal
 
-__all__ = ["Channel", "Derivation", "Scaled", "derive", "derive_pencil"]
+__all__ = ["Channel", "Derivation", "Scaled", "derive", "derive_pencil", "derive_stages"]
 
 
 @dataclass(frozen=True)
@@ -81,25 +81,49 @@ class Derivation:
         return self.pencil.divisors
 
 
-def derive(model: Model, stage: Callable[[str], None] = lambda name: None) -> Derivation:
-    """Derive everything from a plant; `stage` is told what is being worked on.
+def derive_stages(model: Model) -> list[str]:
+    """The names that `derive` gives to `stage`, in order."""
+    return [
+        "the pencil",
+        "the characteristic polynomial",
+        "the adjugate",
+        *(f"the numerator of {y.name}/{u.name}" for y in model.outputs for u in model.inputs),
+        "the zero polynomial",
+    ]
+
+
+def derive(
+    model: Model,
+    stage: Callable[[str], None] = lambda name: None,
+    found: Callable[[Scaled | Channel], None] = lambda finding: None,
+) -> Derivation:
+    """Derive everything from a plant.
+
+    `stage` is told what is being worked on, `found` is handed the characteristic polynomial and each
+    channel as soon as it is there, so that a caller can keep them if the rest takes too long.
 
     Errors: InputError for entries at fault and for a pencil that is singular for every s.
     """
     stage("the pencil")
-    return derive_pencil(build_pencil(model), stage)
+    return derive_pencil(build_pencil(model), stage, found)
 
 
-def derive_pencil(pencil: Pencil, stage: Callable[[str], None] = lambda name: None) -> Derivation:
-    """Derive everything from a pencil that is at hand."""
+def derive_pencil(
+    pencil: Pencil,
+    stage: Callable[[str], None] = lambda name: None,
+    found: Callable[[Scaled | Channel], None] = lambda finding: None,
+) -> Derivation:
+    """Derive everything from a pencil that is at hand; see `derive`."""
     ring = pencil.ring
     stage("the characteristic polynomial")
     characteristic = determinant(pencil.dynamics, ring.one)
     if ring.is_zero(characteristic):
         raise InputError([_singular_pencil(pencil.model)])
+    characteristic = ring.reduce(characteristic)
+    polynomial = _scaled(pencil, characteristic, pencil.multiplier)
+    found(polynomial)
     stage("the adjugate")
     again, adjoint = adjugate(pencil.dynamics, ring.one)
-    characteristic = ring.reduce(characteristic)
     checks = [
         _identity(
             ring,
@@ -123,11 +147,12 @@ def derive_pencil(pencil: Pencil, stage: Callable[[str], None] = lambda name: No
                 )
             )
             channels.append(_channel(pencil, i, j, ring.reduce(contracted), characteristic))
+            found(channels[-1])
     stage("the zero polynomial")
-    zero, note = _zero_polynomial(pencil, channels)
+    zero, note = _zero_polynomial(pencil)
     return Derivation(
         pencil,
-        _scaled(pencil, characteristic, pencil.multiplier),
+        polynomial,
         tuple(channels),
         zero,
         note,
@@ -214,7 +239,7 @@ def _divides(ring: Ring, factor: Element, element: Element) -> bool:
     return not element or not element % factor
 
 
-def _zero_polynomial(pencil: Pencil, channels: list[Channel]) -> tuple[Scaled | None, str]:
+def _zero_polynomial(pencil: Pencil) -> tuple[Scaled | None, str]:
     m, p = len(pencil.model.inputs), len(pencil.model.outputs)
     if m != p:
         return None, (
