@@ -1,0 +1,1 @@
+"""The parts of supervised work: the wire between worker and parent, the worker, the guard, the endings."""
