@@ -3,8 +3,8 @@
     python supervised_jobs.py JOB MARKER KEYWORDS(JSON) [FOLDER]
 
 MARKER stands in the command line of every process of the run, so that a test can look for strays.
-When the work is over it writes the time that passed, the processor time used by all processes, and the heavy libraries that
-the parent has loaded to standard error.
+When the work is over it writes to standard error: the time that passed, the processor time used by all
+processes, and the heavy libraries that the parent has loaded.
 """
 
 import json

@@ -2,7 +2,6 @@
 
 import contextlib
 import hashlib
-import itertools
 import json
 import os
 import re
@@ -17,13 +16,9 @@ from pathlib import Path
 import click
 import pytest
 from click.testing import CliRunner
-from hypothesis import given
-from hypothesis import strategies as st
 
 from symplant.cli.budget import run_supervised
-from symplant.cli.options import SECONDS, SIZE, budget_options
-from symplant.cli.supervision.channel import FrameReader, Kind, pack, to_bytes, to_text
-from symplant.cli.supervision.ledger import Ledger
+from symplant.cli.options import budget_options
 
 PROGRAM = Path(__file__).with_name("supervised_jobs.py")
 LATE = 4.0  # seconds within which a loaded machine must have done what takes a few milliseconds
@@ -242,6 +237,25 @@ def test_interruption_ends_everything(tmp_path, number, status, reason):
     assert list(tmp_path.iterdir()) == []
 
 
+def test_signal_to_every_process_at_once(tmp_path):
+    run = Run("long_with_helper", tmp_path)
+    run.wait_until_ready()
+    for pid in processes(run.marker):
+        os.kill(int(pid), signal.SIGTERM)
+    run.finish()
+    assert run.status in (3, 143)  # which of the two died first is left to the system
+    assert "finished: nothing; not finished: factors.\n" in run.err and "report it" not in run.err
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_signal_that_was_ignored_stays_ignored():
+    run = Run("long_product", max_seconds=1.5, wrap=["sh", "-c", 'trap "" HUP; exec "$@"', "sh"])
+    run.wait_until_ready()
+    os.kill(run.process.pid, signal.SIGHUP)
+    run.finish()
+    assert run.status == 3 and "the time budget of 1.5 s ran out" in run.err
+
+
 def test_killed_parent_takes_everything_along(tmp_path):
     run = Run("long_with_helper", tmp_path)
     run.wait_until_ready()
@@ -405,49 +419,3 @@ def test_without_fork_time_ends_it_between_calls():
     assert run.err == (
         "symplant: stopped because the time budget of 0.3 s ran out; finished: nothing; not finished: loop.\n"
     )
-
-
-# Parts
-
-
-@given(st.lists(st.tuples(st.sampled_from(Kind), st.binary(max_size=40))), st.lists(st.integers(0, 400)))
-def test_messages_survive_any_cutting_of_the_stream(messages, cuts):
-    wire = b"".join(pack(kind, payload) for kind, payload in messages)
-    reader, read, places = FrameReader(), [], [0, *sorted(cuts), len(wire)]
-    for start, end in itertools.pairwise(places):
-        read += reader.feed(wire[start:end])
-    assert read == messages
-
-
-@given(st.binary())
-def test_bytes_that_are_no_text_come_back_unchanged(data):
-    assert to_bytes(to_text(data)) == data
-
-
-def test_a_stage_taken_up_again_is_unfinished_again():
-    book = Ledger(out=lambda _: None, err=lambda _: None)
-    for name in (b"poles", b"zeros", b"poles"):
-        book.take(Kind.STAGE, name)
-    assert (book.finished, book.unfinished) == (["zeros"], ["poles"])
-
-
-@pytest.mark.parametrize(
-    ("text", "words"),
-    [
-        ("12X", "500MB, 2GB or 1.5GiB"),
-        ("5M", "5MB or 5MiB"),
-        ("0GB", "more than zero"),
-        ("-1GB", "not an amount of memory"),
-        ("much", "not an amount of memory"),
-        ("nan", "not an amount of memory"),
-    ],
-)
-def test_size_at_fault_says_what_would_be_right(text, words):
-    with pytest.raises(click.BadParameter, match=words):
-        SIZE.convert(text, None, None)
-
-
-@pytest.mark.parametrize("text", ["0", "-3", "inf", "nan", "soon"])
-def test_seconds_at_fault(text):
-    with pytest.raises(click.BadParameter, match=r"above zero|not a number of seconds"):
-        SECONDS.convert(text, None, None)

@@ -168,6 +168,10 @@ class _Watch:
         ledger, sentence = self._ledger, b""
         if ledger.status is not None:
             stop = None  # it was done just before it would have been stopped
+        elif stop is None and self._interruptions.received is not None:
+            stop = interrupted(
+                self._interruptions.received
+            )  # sent to the worker as well, which died of it first
         elif stop is None:
             status = self._worker.wait_status or 0
             stop = diagnose(ledger, status, self._chatter, self._max_memory, self._memory.peak)

@@ -138,4 +138,4 @@ def _size(number: int) -> str:
     for unit, name in ((10**12, "TB"), (10**9, "GB"), (10**6, "MB"), (10**3, "kB")):
         if number >= unit:
             return f"{number / unit:.4g} {name}"
-    return f"{number} bytes"
+    return f"{number} bytes" if number > 1 else "1 byte"
