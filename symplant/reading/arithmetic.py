@@ -8,6 +8,7 @@ at once with its column, and because nothing that a user wrote may ever be evalu
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable
+from functools import lru_cache
 
 from symplant.algebra.expression import Node
 from symplant.errors import Fault, InputError
@@ -43,7 +44,7 @@ column=1), denominator=Number(value=Fraction(2, 1), column=4), column=3)
     if len(text) > MAX_LENGTH:
         reason = f"text of {len(text):,} characters"
         raise InputError([Fault(f"column {MAX_LENGTH + 1}", reason, f"at most {MAX_LENGTH:,} are read")])
-    letters = {normal_form(name): name for name in names}
+    letters = _letters(frozenset(names))
     read = tokenize(text)
     faults = [*read.faults, *name_faults(read.tokens, letters)]
     if not read.tokens and not faults:
@@ -56,6 +57,12 @@ column=1), denominator=Number(value=Fraction(2, 1), column=4), column=3)
     if tree is None or faults:
         raise InputError(_in_order(faults))
     return tree
+
+
+@lru_cache(maxsize=64)
+def _letters(names: frozenset[str]) -> dict[str, str]:
+    """Declared letters by normal form: the same for all entries of a plant."""
+    return {normal_form(name): name for name in names}
 
 
 def _in_order(faults: Iterable[Fault]) -> list[Fault]:

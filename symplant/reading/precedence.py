@@ -183,7 +183,9 @@ class Parser:
         inner, function = self._operands.pop(), self._waiting.pop().function
         if function is not None:
             call = Call(normal_form(function.text), inner.node, function.column)
-            inner = _Part([call], function.column, inner.height + 1, inner.powers)
+            # A function is one more letter to the algebra, but a root and its radicand share powers.
+            powers = inner.powers if call.function == "sqrt" else 1
+            inner = _Part([call], function.column, inner.height + 1, powers)
         self._put(_Part([inner.node], inner.column, inner.height, inner.powers), token)
 
     def _finish(self) -> Node | None:

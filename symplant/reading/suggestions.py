@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection, Iterable
 from difflib import get_close_matches
+from functools import lru_cache
 
 __all__ = ["as_product", "did_you_mean", "listed", "quoted"]
 
@@ -20,7 +21,8 @@ def quoted(text: str) -> str:
     """
     if len(text) > _LONGEST_SHOWN:
         text = text[: _LONGEST_SHOWN - 3] + "..."
-    return repr(text)
+    shown = "".join(sign if sign.isprintable() else repr(sign)[1:-1] for sign in text)
+    return f'"{shown}"' if "'" in shown and '"' not in shown else f"'{shown}'"
 
 
 def listed(words: Iterable[str], last: str = "or") -> str:
@@ -45,7 +47,12 @@ def did_you_mean(word: str, known: Iterable[str], *first: str) -> str:
     >>> did_you_mean("q", ["m", "k"])
     ''
     """
-    candidates = [other for other in dict.fromkeys(known) if other != word]
+    return _question(word, tuple(dict.fromkeys(known)), first)
+
+
+@lru_cache(maxsize=1024)
+def _question(word: str, known: tuple[str, ...], first: tuple[str, ...]) -> str:
+    candidates = [other for other in known if other != word]
     like = _skeleton(word)
     offers = dict.fromkeys(first)
     offers |= dict.fromkeys(other for other in candidates if _skeleton(other) == like)
