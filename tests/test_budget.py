@@ -13,12 +13,7 @@ import time
 import uuid
 from pathlib import Path
 
-import click
 import pytest
-from click.testing import CliRunner
-
-from symplant.cli.budget import run_supervised
-from symplant.cli.options import budget_options
 
 PROGRAM = Path(__file__).with_name("supervised_jobs.py")
 LATE = 4.0  # seconds within which a loaded machine must have done what takes a few milliseconds
@@ -158,12 +153,12 @@ def test_helper_of_the_job_does_not_outlive_it():
 
 
 def test_time_budget_holds_inside_one_flint_call():
-    run = Run("long_product", max_seconds=1.0).finish()
+    run = Run("long_product", max_seconds=1.5).finish()
     assert run.status == 3
-    assert 1.0 <= run.elapsed < 1.0 + LATE  # measured: 1.02
+    assert 1.5 <= run.elapsed < 1.5 + LATE  # measured: 1.52
     assert run.out == "poles: -1, -2\n"
     assert run.err == (
-        "ready\nsymplant: stopped because the time budget of 1 s ran out;"
+        "ready\nsymplant: stopped because the time budget of 1.5 s ran out;"  # and no progress line in a pipe
         " finished: poles; not finished: zeros, report.\n"
     )
 
@@ -328,10 +323,6 @@ def read_until(terminal, pattern):
     return seen
 
 
-def test_no_progress_line_in_a_pipe():
-    assert "working" not in Run("long_product", max_seconds=1.5).finish().err
-
-
 # Output that is large, stuck or unwanted
 
 
@@ -387,20 +378,6 @@ def test_closed_standard_streams_do_no_harm(tmp_path):
     run = Run("answer", stdout=None, stderr=None, wrap=["sh", "-c", script, "sh"]).finish()
     assert run.status == 1
     assert (tmp_path / "err").read_text().startswith("a remark\nprinted by a library\n")
-
-
-def test_captured_streams_get_the_text():
-    @click.command()
-    @budget_options
-    def command(max_seconds, max_memory):
-        def job(channel):
-            channel.out(f"{max_seconds} {max_memory}\n")
-            return 3
-
-        raise SystemExit(run_supervised(job, max_seconds=max_seconds, max_memory=max_memory))
-
-    result = CliRunner().invoke(command, ["--max-seconds", "30", "--max-memory", "1.5GiB"])
-    assert (result.exit_code, result.output) == (3, "30.0 1610612736\n")
 
 
 # Where nothing can be forked

@@ -4,10 +4,12 @@ import itertools
 
 import click
 import pytest
+from click.testing import CliRunner
 from hypothesis import given
 from hypothesis import strategies as st
 
-from symplant.cli.options import SECONDS, SIZE
+from symplant.cli.budget import run_supervised
+from symplant.cli.options import SECONDS, SIZE, budget_options
 from symplant.cli.supervision.channel import FrameReader, Kind, pack, to_bytes, to_text
 from symplant.cli.supervision.ledger import Ledger
 
@@ -53,3 +55,17 @@ def test_size_at_fault_says_what_would_be_right(text, words):
 def test_seconds_at_fault(text):
     with pytest.raises(click.BadParameter, match=r"above zero|not a number of seconds"):
         SECONDS.convert(text, None, None)
+
+
+def test_captured_streams_get_the_text():
+    @click.command()
+    @budget_options
+    def command(max_seconds, max_memory):
+        def job(channel):
+            channel.out(f"{max_seconds} {max_memory}\n")
+            return 3
+
+        raise SystemExit(run_supervised(job, max_seconds=max_seconds, max_memory=max_memory))
+
+    result = CliRunner().invoke(command, ["--max-seconds", "30", "--max-memory", "1.5GiB"])
+    assert (result.exit_code, result.output) == (3, "30.0 1610612736\n")
