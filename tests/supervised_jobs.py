@@ -127,7 +127,7 @@ def flint_refused(channel: Channel) -> int:
 
 
 def long_with_helper(channel: Channel) -> int:
-    from symplant.cli.files import staged_folder
+    from symplant.writing.files import staged_folder
 
     _start_helper()
     with staged_folder(FOLDER / "report", channel) as folder:

@@ -10,7 +10,7 @@ from pathlib import Path
 import pytest
 
 from symplant.cli import files
-from symplant.cli.files import require_file_target, require_folder_target, settle, staged_folder, write_whole
+from symplant.writing.files import require_file_target, require_folder_target, settle, staged_folder, write_whole
 from symplant.errors import InputError
 
 PROGRAM = Path(__file__).with_name("supervised_jobs.py")

@@ -64,7 +64,7 @@ def run_supervised(
     the reader of a pipe who left (141). Finished parts are put out and the rest is named in every case.
 
     Whatever happens to this process, SIGKILL included, no process of the work goes on and no staging
-    place (see `symplant.cli.files`) is left. Where nothing can be forked (Windows) the job runs in
+    place (see `symplant.writing.files`) is left. Where nothing can be forked (Windows) the job runs in
     this process: the time budget then acts only between calls into the libraries, the memory budget
     not at all.
 

@@ -69,7 +69,7 @@ class Ledger:
             return troubles
         from pathlib import Path
 
-        from symplant.cli.files import settle
+        from symplant.writing.files import settle
 
         for path, target in self._unsettled.items():
             try:

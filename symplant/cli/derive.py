@@ -1,0 +1,88 @@
+"""`symplant derive`: characteristic polynomial, channels, zero polynomial, with every check made."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from symplant.cli.session import (
+    Session,
+    dump,
+    page_width,
+    plant_command,
+    speaks_unicode,
+    wants_colour,
+)
+
+if TYPE_CHECKING:
+    from symplant.cli.budget import Channel
+
+__all__ = ["derive"]
+
+
+@click.command()
+@plant_command
+@click.option("--latex", "as_latex", is_flag=True, help="Give LaTeX to paste or \\input, formulas only.")
+def derive(
+    plant: Path, as_json: bool, as_latex: bool, max_seconds: float | None, max_memory: int | None
+) -> None:
+    """Derive the closed forms of a plant and check them.
+
+    The characteristic polynomial, every channel's numerator and denominator (nothing cancelled, common
+    factors beside them), the zero polynomial, what had to be assumed nonzero, and the checks.
+    """
+    session = Session("derive", plant, as_json, max_seconds, max_memory)
+    width, unicode, colour = page_width(), speaks_unicode(), wants_colour()
+
+    def work(channel: Channel) -> int:
+        from symplant.checking.second_opinion import SecondOpinion
+
+        with SecondOpinion() as opinion:
+            opinion.start()  # first of all: its libraries take as long to load as everything else
+            from symplant.face.work import derive_and_check, derive_plan
+            from symplant.reading.plant_file import read_plant_file
+            from symplant.writing.spelling import Spelling
+
+            model = read_plant_file(plant)
+            spelling = Spelling(model)
+            channel.plan(derive_plan(model))
+            keeper = Keeper(channel, spelling, as_json, width, unicode)
+            derived = derive_and_check(model, opinion, channel.stage, keeper.found)
+        if as_json:
+            from symplant.writing.answer import derive_answer
+
+            channel.out(dump(derive_answer(derived.derivation, derived.checks, spelling.polynomial)))
+        elif as_latex:
+            from symplant.writing.fragments import derive_fragment
+
+            channel.out(derive_fragment(derived.derivation, spelling))
+        else:
+            from symplant.writing.derive_page import derive_page
+
+            page = derive_page(derived.derivation, derived.checks, width, unicode)
+            channel.out(page.coloured() if colour else page.plain())
+        return 0 if derived.passed else 1
+
+    sys.exit(session.run(work))
+
+
+class Keeper:
+    """Keeps each finding as text in case the work is stopped before the answer is whole."""
+
+    def __init__(self, channel: Channel, spelling: Any, as_json: bool, width: int, unicode: bool) -> None:
+        self.channel, self.spelling = channel, spelling
+        self.as_json, self.width, self.unicode = as_json, width, unicode
+
+    def found(self, finding: Any) -> None:
+        """Keep one finding."""
+        if self.as_json:
+            from symplant.writing.answer import finding_answer
+
+            self.channel.keep(dump(finding_answer(finding, self.spelling.polynomial)))
+        else:
+            from symplant.writing.derive_page import finding_page
+
+            self.channel.keep(finding_page(finding, self.width, self.unicode).plain())
