@@ -1,0 +1,1 @@
+"""Zeros of all kinds, hidden modes, and their dependence on the letters."""

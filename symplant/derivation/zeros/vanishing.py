@@ -1,0 +1,158 @@
+"""Whether an expression in the letters vanishes somewhere in the parameter box, with a witness."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+from math import isqrt
+
+from symplant.algebra.box import Box, Interval
+from symplant.algebra.enclosure import certified_sign
+from symplant.algebra.expression import names_in
+from symplant.algebra.points import ladder, points
+from symplant.algebra.ring import Element, Ring
+from symplant.algebra.sign_pattern import factored_sign
+from symplant.algebra.verdict import Verdict
+
+__all__ = ["Surroundings", "Vanishing", "letters_in", "vanishing"]
+
+#: Points of the box from which a zero is looked for.
+POINTS = 60
+
+
+@dataclass(frozen=True)
+class Surroundings:
+    """The box, the nominal values, and what must not vanish (the plant is not defined there)."""
+
+    box: Box
+    nominal: Mapping[str, Fraction]
+    nonzero: tuple[Element, ...] = ()
+
+
+@dataclass(frozen=True)
+class Vanishing:
+    """`proved`: vanishes at `witness`, or between the two points of `between` (differing in one letter).
+
+    Letters that a witness does not name may have any value.  `refuted`: vanishes nowhere in the box.  `undecided`: neither could be shown.
+    """
+
+    verdict: Verdict
+    reason: str
+    witness: Mapping[str, Fraction] | None = None
+    between: tuple[Mapping[str, Fraction], Mapping[str, Fraction]] | None = None
+
+
+def vanishing(ring: Ring, element: Element, around: Surroundings) -> Vanishing:
+    """Decide whether an element free of the variable has a zero in the box.
+
+    >>> from symplant.algebra.box import Sign
+    >>> box = Box({"a": Interval(declared=Sign.POSITIVE), "b": Interval(declared=Sign.POSITIVE)})
+    >>> ring = Ring("s", ("a", "b"), box)
+    >>> a, b = ring.gen("a"), ring.gen("b")
+    >>> vanishing(ring, a - b, Surroundings(box, {})).witness
+    {'a': Fraction(1, 1), 'b': Fraction(1, 1)}
+    >>> vanishing(ring, a + b, Surroundings(box, {})).verdict.value
+    'refuted'
+    """
+    if not element:
+        return Vanishing(Verdict.PROVED, "identically zero", {})
+    if factored_sign(ring, element).is_nonzero:
+        return Vanishing(Verdict.REFUTED, "its terms, by their signs over the box, cannot cancel")
+    letters = sorted(letters_in(ring, (element, *around.nonzero)), key=ring.letters.index)
+    for point in points(around.box, letters, around.nominal, POINTS):
+        for letter, value in _solutions(ring, element, point):
+            candidate = {**point, letter: value}
+            if _admissible(ring, element, candidate, around):
+                return Vanishing(Verdict.PROVED, "an exact zero inside the box", candidate)
+    pair = _sign_change(ring, element, letters, around)
+    if pair is not None:
+        return Vanishing(
+            Verdict.PROVED, "its sign differs at the ends of a segment inside the box", None, pair
+        )
+    return Vanishing(
+        Verdict.UNDECIDED, f"neither its signs nor {POINTS} points of the box settle whether it vanishes"
+    )
+
+
+def letters_in(ring: Ring, elements: Sequence[Element]) -> set[str]:
+    """The letters that elements depend on, those inside functions too."""
+    found: set[str] = set()
+    for key in ring.used(elements):
+        found |= names_in(ring.meanings[ring.position[key]])
+    return found & set(ring.letters)
+
+
+def _admissible(ring: Ring, element: Element, point: Mapping[str, Fraction], around: Surroundings) -> bool:
+    return (
+        all(_interval(around.box, letter).contains(value) for letter, value in point.items())
+        and certified_sign(ring, element, point) == 0
+        and all(certified_sign(ring, other, point) not in (0, None) for other in around.nonzero)
+    )
+
+
+def _interval(box: Box, letter: str) -> Interval:
+    return box.intervals.get(letter, Interval())
+
+
+def _solutions(ring: Ring, element: Element, point: Mapping[str, Fraction]) -> Iterator[tuple[str, Fraction]]:
+    """Rational values of one letter that make an element of letters alone vanish, the rest as in point."""
+    if not ring.used([element]) <= set(ring.letters):
+        return
+    for letter in point:
+        coefficients = [ring.value(c, point) for c in ring.coefficients(element, letter)]
+        while coefficients and not coefficients[-1]:
+            coefficients.pop()
+        if len(coefficients) == 2:
+            yield letter, -coefficients[0] / coefficients[1]
+        elif len(coefficients) == 3:
+            c, b, a = coefficients
+            root = _square_root(b * b - 4 * a * c)
+            if root is not None:
+                yield letter, (-b + root) / (2 * a)
+                yield letter, (-b - root) / (2 * a)
+
+
+def _square_root(value: Fraction) -> Fraction | None:
+    if value < 0:
+        return None
+    top, bottom = isqrt(value.numerator), isqrt(value.denominator)
+    return Fraction(top, bottom) if Fraction(top, bottom) ** 2 == value else None
+
+
+def _sign_change(
+    ring: Ring, element: Element, letters: Sequence[str], around: Surroundings
+) -> tuple[Mapping[str, Fraction], Mapping[str, Fraction]] | None:
+    """Two points that differ in one letter and between which the element must vanish.
+
+    On the segment nothing that must not vanish may depend on the letter unless its sign is known,
+    and the letter may not pass the value zero if that is ruled out.
+    """
+    for letter in letters:
+        if any(
+            letter in letters_in(ring, (other,)) and not factored_sign(ring, other).is_nonzero
+            for other in around.nonzero
+        ):
+            continue
+        interval = _interval(around.box, letter)
+        for point in points(around.box, letters, around.nominal, POINTS // 4):
+            if not _admissible_elsewhere(ring, point, around):
+                continue
+            start = certified_sign(ring, element, point)
+            for value in _values(interval, point[letter]):
+                other = {**point, letter: value}
+                end = certified_sign(ring, element, other)
+                if start and end and start != end:
+                    return point, other
+    return None
+
+
+def _admissible_elsewhere(ring: Ring, point: Mapping[str, Fraction], around: Surroundings) -> bool:
+    return all(certified_sign(ring, other, point) not in (0, None) for other in around.nonzero)
+
+
+def _values(interval: Interval, start: Fraction) -> Iterator[Fraction]:
+    for value in ladder(interval, start):
+        if interval.sign.is_nonzero and (value > 0) != (start > 0):
+            continue
+        yield value
