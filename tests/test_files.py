@@ -9,7 +9,7 @@ from pathlib import Path
 
 import pytest
 
-from symplant.cli import files
+from symplant.writing import files
 from symplant.writing.files import require_file_target, require_folder_target, settle, staged_folder, write_whole
 from symplant.errors import InputError
 
