@@ -142,7 +142,7 @@ def long_with_helper(channel: Channel) -> int:
 
 def killed_while_moving(channel: Channel) -> int:
     """The worker is taken away after two of five files have been moved."""
-    from symplant.cli import files
+    from symplant.writing import files
 
     plain, moved = Path.replace, []
 
