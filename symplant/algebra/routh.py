@@ -20,8 +20,10 @@ from fractions import Fraction
 from itertools import pairwise
 from math import gcd, lcm
 
+from symplant.algebra.hurwitz import HurwitzTable, hurwitz_table
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ratio import Ratio
+from symplant.algebra.ring import Ring
 
 __all__ = ["RootCounts", "RouthArray", "RouthRow", "root_counts", "routh_array"]
 
@@ -84,6 +86,9 @@ def routh_array(polynomial: Polynomial) -> RouthArray:
     ring, n = polynomial.ring, polynomial.degree
     if n < 0:
         raise ValueError("the zero polynomial has no Routh array")
+    table = None if ring.has_relations else hurwitz_table(ring, polynomial.coefficients)
+    if table is not None:
+        return RouthArray(tuple(_regular_row(ring, n, k, table) for k in range(n + 1)))
     top = [Ratio.of(ring, c) for c in reversed(polynomial.coefficients)]
     rows = [RouthRow(n, tuple(top[0::2]))]
     for power in range(n - 1, -1, -1):
@@ -94,6 +99,13 @@ def routh_array(polynomial: Polynomial) -> RouthArray:
         entries = entries[: power // 2 + 1]
         rows.append(_treated(power, entries, kind, rows[-1]))
     return RouthArray(tuple(rows))
+
+
+def _regular_row(ring: Ring, degree: int, k: int, table: HurwitzTable) -> RouthRow:
+    if k < 2:
+        return RouthRow(degree - k, tuple(Ratio.of(ring, entry) for entry in table[k]))
+    entries = tuple(Ratio.of(ring, entry, table[k - 1][0]) for entry in table[k])
+    return RouthRow(degree - k, entries, "computed")
 
 
 def _next_row(above: Sequence[Ratio], pivot_row: Sequence[Ratio]) -> list[Ratio]:
