@@ -18,7 +18,7 @@ from symplant.reading.sympy_letters import SymbolTable
 from symplant.reading.tables import key_place, kind_of
 from symplant.reading.tokens import normal_form
 
-__all__ = ["model_from_arguments"]
+__all__ = ["model_and_symbols", "model_from_arguments"]
 
 
 def model_from_arguments(
@@ -54,6 +54,25 @@ def model_from_arguments(
     >>> model.letters, model.inputs[0].name
     (('m', 'k'), 'u1')
     """
+    signals = {"states": states, "inputs": inputs, "outputs": outputs}
+    return model_and_symbols(A, B, C, D, E, parameters=parameters, time=time, title=title, **signals)[0]
+
+
+def model_and_symbols(
+    A: object,
+    B: object,
+    C: object,
+    D: object = None,
+    E: object = None,
+    *,
+    parameters: Mapping[Any, Any] | Iterable[Any] | None = None,
+    states: Iterable[Any] | None = None,
+    inputs: Iterable[Any] | None = None,
+    outputs: Iterable[Any] | None = None,
+    time: str = "continuous",
+    title: str = "",
+) -> tuple[Model, dict[str, Any]]:
+    """The same plant, and the caller's own SymPy symbol for each name that was given as one."""
     faults = FaultList()
     given = {"A": A, "B": B, "C": C, "D": D, "E": E}
     matrices = {name: plain_rows(value) for name, value in given.items() if value is not None}
@@ -64,7 +83,10 @@ def model_from_arguments(
     for key, value in (("states", states), ("inputs", inputs), ("outputs", outputs)):
         if value is not None:
             raw[key] = signal_value(value)
-    return build_model(raw, trees, faults)
+    symbols: dict[str, Any] = {}
+    for symbol, name in table.names.items():
+        symbols.setdefault(name, symbol)
+    return build_model(raw, trees, faults), symbols
 
 
 def _declared(parameters: object, faults: FaultList) -> SymbolTable:
@@ -79,21 +101,19 @@ def _declared(parameters: object, faults: FaultList) -> SymbolTable:
     pairs = parameters.items() if isinstance(parameters, Mapping) else ((name, {}) for name in parameters)
     for number, (key, value) in enumerate(pairs, start=1):
         fields = _fields(value)
-        if is_symbol(key):
-            table.declare(key, fields if isinstance(fields, dict) else {})
-            continue
-        if not isinstance(key, str):
-            faults.add(f"parameters[{number}]", f"{kind_of(key)} where a name or a symbol is expected")
-            continue
-        name = normal_form(key)
-        if name in table.tables:
-            faults.add(key_place("parameters", name), "declared twice")
         if not isinstance(fields, dict):
-            faults.add(
-                key_place("parameters", name), f"{kind_of(value)} where a table is expected", "write {...}"
-            )
+            place = key_place("parameters", key)
+            faults.add(place, f"{kind_of(value)} where a table is expected", "write {...}")
             fields = {}
-        table.tables[name] = fields
+        if is_symbol(key):
+            table.declare(key, fields)
+        elif not isinstance(key, str):
+            faults.add(f"parameters[{number}]", f"{kind_of(key)} where a name or a symbol is expected")
+        else:
+            name = normal_form(key)
+            if name in table.tables:
+                faults.add(key_place("parameters", name), "declared twice")
+            table.tables[name] = fields
     return table
 
 
@@ -133,7 +153,7 @@ def _with_trees(value: object, name: str, table: SymbolTable, faults: FaultList)
         for j, entry in enumerate(row, start=1):
             if is_sympy(entry):
                 try:
-                    entries.append(tree_from_sympy(entry, table.names))
+                    entries.append(tree_from_sympy(entry, table.names, table.tables))
                 except InputError as error:
                     faults.take(error, f"{name}[{i}][{j}]")
                     entries.append(integer(0))

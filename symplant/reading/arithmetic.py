@@ -1,6 +1,6 @@
 """Arithmetic text to expression trees: the strict reader of plant files and claims.
 
-Precedence is Python's: `-x**2` is `-(x**2)`, `2**-1` is a half, `**` groups from the right.  The
+Precedence is Python's in value: `-x**2` is `-(x**2)`, `2**-1` is a half, `**` groups from the right.  The
 reader is our own because letters may be called `lambda` or `in`, because every fault is to be found
 at once with its column, and because nothing that a user wrote may ever be evaluated as a program.
 """
@@ -33,9 +33,8 @@ def read_arithmetic(text: str, names: Collection[str]) -> Node:
 
     Raises InputError with all faults found, each at "column N", counted from 1.
 
-    >>> read_arithmetic("-k/2", ["k"])
-    Quotient(numerator=Product(factors=(Number(value=Fraction(-1, 1), column=1), Name(name='k', column=2)), \
-column=1), denominator=Number(value=Fraction(2, 1), column=4), column=3)
+    >>> read_arithmetic("-k/2", ["k"]).factors[1]
+    Quotient(numerator=Name(name='k', column=2), denominator=Number(value=Fraction(2, 1), column=4), column=3)
     >>> read_arithmetic("2k + ml", ["k", "m1"])
     Traceback (most recent call last):
     symplant.errors.InputError: column 2: no operator between '2' and 'k' (a product is written 2*k)

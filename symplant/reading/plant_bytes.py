@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+from difflib import get_close_matches
 from pathlib import Path
 
 from symplant.errors import Fault, InputError
-from symplant.reading.suggestions import did_you_mean, listed
+from symplant.reading.suggestions import listed, quoted
 
 __all__ = ["MAX_BYTES", "file_text"]
 
@@ -51,10 +52,12 @@ def _refused(path: str | Path, reason: str, suggestion: str = "") -> InputError:
 def _neighbour(path: Path) -> str:
     """A file in the same folder that was perhaps meant."""
     try:
-        names = sorted(entry.name for entry in path.parent.iterdir())[:1000]
+        names = {entry.stem: entry.name for entry in sorted(path.parent.iterdir())[:1000]}
     except (OSError, ValueError):
         return ""
-    return did_you_mean(path.name, names)
+    # By the stem: the ending alone makes any two names alike.
+    near = get_close_matches(path.stem, names, n=1, cutoff=0.6)
+    return f"did you mean {quoted(names[near[0]])}?" if near else ""
 
 
 def _plants_within(folder: Path) -> str:

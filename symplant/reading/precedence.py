@@ -23,7 +23,20 @@ __all__ = ["MAX_NESTING", "Parser"]
 #: Deepest nesting of brackets, and largest height of the tree that comes out.
 MAX_NESTING = 200
 
-_PRECEDENCE = {"(": 0, "+": 1, "-": 1, "*": 2, "/": 2, "prefix +": 3, "prefix -": 3, "**": 4}
+# A sign that leads a term is applied to the whole term: -k/m is read as -(k/m), which has the value
+# that Python gives to (-k)/m and the shape that its author sees.
+_PRECEDENCE = {
+    "(": 0,
+    "+": 1,
+    "-": 1,
+    "leading +": 2,
+    "leading -": 2,
+    "*": 3,
+    "/": 3,
+    "inner +": 4,
+    "inner -": 4,
+    "**": 5,
+}
 
 
 @dataclass(slots=True)
@@ -151,7 +164,9 @@ class Parser:
         if complete:
             self._push(_Waiting(token.text, token))
         elif token.text in ("+", "-"):
-            self._waiting.append(_Waiting(f"prefix {token.text}", token))
+            before = self._waiting[-1].sign if self._waiting else "("
+            rank = "leading" if before in ("(", "+", "-") or before.startswith("leading") else "inner"
+            self._waiting.append(_Waiting(f"{rank} {token.text}", token))
         else:
             self._fault(token, f"{quoted(token.text)} has nothing before it")
         return False
@@ -200,8 +215,8 @@ class Parser:
 
     def _apply(self, operator: _Waiting) -> None:
         right, column = self._operands.pop(), operator.token.column
-        if operator.sign.startswith("prefix"):
-            right = _negative(right, column, column) if operator.sign == "prefix -" else right
+        if operator.sign.startswith(("leading", "inner")):
+            right = _negative(right, column, column) if operator.sign.endswith("-") else right
             self._put(right, operator.token)
             return
         left = self._operands.pop()
@@ -249,13 +264,16 @@ class Parser:
 
 
 def _negative(part: _Part, sign_column: int, start: int) -> _Part:
-    """Minus a part: numbers change their sign, products get one more factor."""
+    """Minus a part: numbers change their sign, also in front of a product; others get a factor -1."""
     node = part.node
     if isinstance(node, Number):
         return _Part([Number(-node.value, start)], start, part.height, part.powers)
     minus_one = Number(Fraction(-1), sign_column)
     if part.form is Product:
+        first = part.items[0]
         factors = (minus_one, *part.items)
+        if isinstance(first, Number):
+            factors = (Number(-first.value, start), *part.items[1:])
         return _Part([Product(factors, start)], start, part.height, part.powers)
     return _Part([Product((minus_one, node), start)], start, part.height + 1, part.powers)
 

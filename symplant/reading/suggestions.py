@@ -47,7 +47,8 @@ def did_you_mean(word: str, known: Iterable[str], *first: str) -> str:
     >>> did_you_mean("q", ["m", "k"])
     ''
     """
-    return _question(word, tuple(dict.fromkeys(known)), first)
+    # Sorted, for letters may come as a set: the question must be the same in every run.
+    return _question(word, tuple(sorted(set(known))), first)
 
 
 @lru_cache(maxsize=1024)

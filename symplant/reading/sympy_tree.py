@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
@@ -30,8 +30,12 @@ if TYPE_CHECKING:
 __all__ = ["tree_from_sympy"]
 
 
-def tree_from_sympy(expression: sympy.Basic, names: Mapping[sympy.Symbol, str]) -> Node:
+def tree_from_sympy(
+    expression: sympy.Basic, names: Mapping[sympy.Symbol, str], letters: Collection[str] = ()
+) -> Node:
     """The tree of a SymPy expression; `names` gives the letter that each symbol stands for.
+
+    `letters` are all that are declared, for the question what an undeclared one was meant to be.
 
     A factor with a negative exponent becomes a divisor, so that what is divided by stays known.  A
     Float is the decimal that SymPy prints for it.  What SymPy cancelled before is not seen here.
@@ -40,10 +44,10 @@ def tree_from_sympy(expression: sympy.Basic, names: Mapping[sympy.Symbol, str]) 
 
     >>> import sympy
     >>> k, m = sympy.symbols("k m")
-    >>> tree_from_sympy(-k / m, {k: "k", m: "m"}).denominator
+    >>> tree_from_sympy(k / m, {k: "k", m: "m"}).denominator
     Name(name='m', column=0)
     """
-    reader = _Reader(names)
+    reader = _Reader(names, letters or set(names.values()))
     tree = reader.read(expression, 1, 1)
     if reader.faults:
         raise InputError(dict.fromkeys(reader.faults))
@@ -53,8 +57,9 @@ def tree_from_sympy(expression: sympy.Basic, names: Mapping[sympy.Symbol, str]) 
 class _Reader:
     """One reading of one expression; `faults` gathers what has no tree, and reading goes on."""
 
-    def __init__(self, names: Mapping[sympy.Symbol, str]) -> None:
+    def __init__(self, names: Mapping[sympy.Symbol, str], letters: Collection[str]) -> None:
         self.faults: list[Fault] = []
+        self._letters = letters
         self._names = names
 
     def read(self, part: Any, depth: int, powers: int) -> Node:
@@ -89,7 +94,7 @@ class _Reader:
         name = self._names.get(symbol)
         if name is not None:
             return Name(name)
-        fault = undeclared(symbol.name, set(self._names.values()), "")
+        fault = undeclared(symbol.name, self._letters, "")
         return self._refuse(fault.reason, fault.suggestion)
 
     def _number(self, number: object) -> Node:
@@ -118,8 +123,14 @@ class _Reader:
             tree = self.read(base, depth + 4, inside)
             side = above if exponent > 0 else below
             side.append(tree if abs(exponent) == 1 else raised(tree, abs(exponent)))
-        top = _multiplied(above)
-        return Quotient(top, _multiplied(below)) if below else top
+        if not below:
+            return _multiplied(above)
+        first = above[0] if above else None
+        if isinstance(first, Number) and first.value < 0:
+            # The sign in front of the line, as the arithmetic reader has it.
+            above = [Number(-first.value), *above[1:]] if first.value != -1 else above[1:]
+            return Product((integer(-1), Quotient(_multiplied(above), _multiplied(below))))
+        return Quotient(_multiplied(above), _multiplied(below))
 
     def _split(self, part: Any) -> tuple[Any, Fraction | None]:
         """Base and exponent of a power; no exponent for what is none, or is the exponential."""
