@@ -18,6 +18,12 @@ def file_text(path: str | Path) -> str:
     """The text of a file that is read as UTF-8; a byte order mark is left out.
 
     Raises InputError, with the path as its file, if there is no such text.
+
+    >>> import tempfile
+    >>> with tempfile.TemporaryDirectory() as folder:
+    ...     _ = Path(folder, "p.toml").write_bytes(b"\\xef\\xbb\\xbfformat = 1")
+    ...     file_text(Path(folder, "p.toml"))
+    'format = 1'
     """
     try:
         with Path(path).open("rb") as file:

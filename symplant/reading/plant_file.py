@@ -43,6 +43,10 @@ def read_plant_file(path: str | Path) -> Model:
 
     Raises InputError with every fault of the file: each has its place, such as
     "matrices.A[2][1], column 7", and "NAME.toml:LINE" as its file where the line is known.
+
+    >>> read_plant_file("nowhere/hoist.toml")
+    Traceback (most recent call last):
+    symplant.errors.InputError: nowhere/hoist.toml: there is no such file
     """
     return read_plant_text(file_text(path), str(path))
 
