@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import sys
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import click
 
@@ -19,6 +19,9 @@ from symplant.cli.session import (
 
 if TYPE_CHECKING:
     from symplant.cli.budget import Channel
+    from symplant.derivation.derive import Channel as Finding
+    from symplant.derivation.derive import Scaled
+    from symplant.writing.notation import Notation
 
 __all__ = ["derive"]
 
@@ -44,21 +47,21 @@ def derive(
             opinion.start()  # first of all: its libraries take as long to load as everything else
             from symplant.face.work import derive_and_check, derive_plan
             from symplant.reading.plant_file import read_plant_file
-            from symplant.writing.spelling import Spelling
+            from symplant.writing.notation import Notation
 
             model = read_plant_file(plant)
-            spelling = Spelling(model)
+            notation = Notation(model)
             channel.plan(derive_plan(model))
-            keeper = Keeper(channel, spelling, as_json, width, unicode)
+            keeper = Keeper(channel, notation, as_json, width, unicode)
             derived = derive_and_check(model, opinion, channel.stage, keeper.found)
         if as_json:
             from symplant.writing.answer import derive_answer
 
-            channel.out(dump(derive_answer(derived.derivation, derived.checks, spelling.polynomial)))
+            channel.out(dump(derive_answer(derived.derivation, derived.checks, notation.latex)))
         elif as_latex:
             from symplant.writing.fragments import derive_fragment
 
-            channel.out(derive_fragment(derived.derivation, spelling))
+            channel.out(derive_fragment(derived.derivation))
         else:
             from symplant.writing.derive_page import derive_page
 
@@ -72,16 +75,16 @@ def derive(
 class Keeper:
     """Keeps each finding as text in case the work is stopped before the answer is whole."""
 
-    def __init__(self, channel: Channel, spelling: Any, as_json: bool, width: int, unicode: bool) -> None:
-        self.channel, self.spelling = channel, spelling
+    def __init__(self, channel: Channel, notation: Notation, as_json: bool, width: int, unicode: bool) -> None:
+        self.channel, self.notation = channel, notation
         self.as_json, self.width, self.unicode = as_json, width, unicode
 
-    def found(self, finding: Any) -> None:
+    def found(self, finding: Scaled | Finding) -> None:
         """Keep one finding."""
         if self.as_json:
             from symplant.writing.answer import finding_answer
 
-            self.channel.keep(dump(finding_answer(finding, self.spelling.polynomial)))
+            self.channel.keep(dump(finding_answer(finding, self.notation.latex)))
         else:
             from symplant.writing.derive_page import finding_page
 

@@ -7,8 +7,8 @@ import sys
 import click
 
 from symplant.cli.derive import derive
-from symplant.cli.report import report
-from symplant.cli.stability import stability
+
+
 from symplant.version import __version__
 
 __all__ = ["main", "symplant"]
@@ -30,7 +30,7 @@ def symplant() -> None:
     """
 
 
-for _command in (derive, stability, report):
+for _command in (derive,):
     symplant.add_command(_command)
 
 

@@ -13,7 +13,7 @@ if TYPE_CHECKING:
     from symplant.algebra.polynomial import Polynomial
     from symplant.algebra.ratio import Ratio
     from symplant.algebra.ring import Element, Ring
-    from symplant.derivation.derive import Derivation
+    from symplant.derivation.derive import Channel, Derivation, Scaled
     from symplant.derivation.stability import StabilityFinding
     from symplant.errors import Fault
     from symplant.plant.model import Model
@@ -23,6 +23,7 @@ __all__ = [
     "Answer",
     "check_rows",
     "derive_answer",
+    "finding_answer",
     "fault_answer",
     "polynomial_answer",
     "stability_answer",
@@ -190,3 +191,23 @@ def _number(value: Fraction | None) -> str | None:
 
 def _ratio(ratio: Ratio | None) -> str | None:
     return None if ratio is None else ratio_text(ratio)
+
+
+def finding_answer(finding: Scaled | Channel, latex: Latex) -> Answer:
+    """One finding by itself, to be merged into the answer of work that was stopped."""
+    from symplant.derivation.derive import Scaled
+
+    if isinstance(finding, Scaled):
+        return {"characteristic_polynomial": polynomial_answer(finding.polynomial, latex)}
+    return {
+        "channels": [
+            {
+                "output": finding.output.name,
+                "input": finding.input.name,
+                "numerator": polynomial_answer(finding.numerator, latex),
+                "denominator": polynomial_answer(finding.denominator, latex),
+                "common_factor": polynomial_answer(finding.common_factor, latex),
+                "relative_degree": finding.relative_degree,
+            }
+        ]
+    }
