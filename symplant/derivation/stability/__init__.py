@@ -1,0 +1,24 @@
+"""Stability over the parameter box: the conditions that bind, crossings, witnesses, intervals."""
+
+from symplant.derivation.stability.finding import (
+    Bound,
+    Condition,
+    Crossing,
+    Endpoint,
+    SpecialCase,
+    StabilityFinding,
+    StabilityInterval,
+)
+from symplant.derivation.stability.study import stability, stability_of
+
+__all__ = [
+    "Bound",
+    "Condition",
+    "Crossing",
+    "Endpoint",
+    "SpecialCase",
+    "StabilityFinding",
+    "StabilityInterval",
+    "stability",
+    "stability_of",
+]
