@@ -10,11 +10,12 @@ from typing import TYPE_CHECKING
 from symplant.version import __version__
 
 if TYPE_CHECKING:
-    from symplant.errors import BudgetError, Fault, InputError, SymplantError, UndecidedError
+    from symplant.errors import BudgetError, CheckError, Fault, InputError, SymplantError, UndecidedError
     from symplant.face import Plant
 
 __all__ = [
     "BudgetError",
+    "CheckError",
     "Fault",
     "InputError",
     "Plant",

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
 
-__all__ = ["BudgetError", "Fault", "InputError", "SymplantError", "UndecidedError"]
+__all__ = ["BudgetError", "CheckError", "Fault", "InputError", "SymplantError", "UndecidedError"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +65,14 @@ class UndecidedError(SymplantError):
 
 class BudgetError(SymplantError):
     """A time or memory budget ran out before the work was finished."""
+
+
+class CheckError(SymplantError):
+    """A check found something wrong; `checks` holds those that failed."""
+
+    def __init__(self, checks: tuple[object, ...]) -> None:
+        self.checks = checks
+        super().__init__("; ".join(str(check) for check in checks))
 
 
 def _joined(outer: str, inner: str) -> str:

@@ -75,7 +75,9 @@ def derive(
 class Keeper:
     """Keeps each finding as text in case the work is stopped before the answer is whole."""
 
-    def __init__(self, channel: Channel, notation: Notation, as_json: bool, width: int, unicode: bool) -> None:
+    def __init__(
+        self, channel: Channel, notation: Notation, as_json: bool, width: int, unicode: bool
+    ) -> None:
         self.channel, self.notation = channel, notation
         self.as_json, self.width, self.unicode = as_json, width, unicode
 

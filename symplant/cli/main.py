@@ -7,8 +7,8 @@ import sys
 import click
 
 from symplant.cli.derive import derive
-
-
+from symplant.cli.report import report
+from symplant.cli.stability import stability
 from symplant.version import __version__
 
 __all__ = ["main", "symplant"]
@@ -16,7 +16,8 @@ __all__ = ["main", "symplant"]
 
 @click.group(
     context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
-    epilog="Exit status: 0 done; 1 a claim is refuted or a check fails; 2 the input is at fault; 3 stopped by a budget.",
+    epilog="Exit status: 0 done; 1 a claim is refuted or a check fails; 2 the input is at fault; "
+    "3 stopped by a budget.",
 )
 @click.version_option(__version__, message="symplant %(version)s")
 def symplant() -> None:
@@ -30,7 +31,7 @@ def symplant() -> None:
     """
 
 
-for _command in (derive,):
+for _command in (derive, stability, report):
     symplant.add_command(_command)
 
 

@@ -30,11 +30,14 @@ def plant_command(function: Function) -> Function:
     """Give a command the plant file, `--json` and the budgets."""
     function = budget_options(function)
     function = click.option(
-        "--json", "as_json", is_flag=True, help="Give a machine answer on standard output, nothing else there."
+        "--json",
+        "as_json",
+        is_flag=True,
+        help="Give a machine answer on standard output, nothing else there.",
     )(function)
-    return click.argument(
-        "plant", type=click.Path(path_type=Path, exists=False), metavar="PLANT.toml"
-    )(function)
+    return click.argument("plant", type=click.Path(path_type=Path, exists=False), metavar="PLANT.toml")(
+        function
+    )
 
 
 @dataclass(frozen=True)

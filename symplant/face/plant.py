@@ -8,6 +8,7 @@ from fractions import Fraction
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from symplant.errors import CheckError
 from symplant.face.results import DerivationResult, StabilityResult, Writing
 
 if TYPE_CHECKING:
@@ -110,11 +111,21 @@ class Plant:
         return StabilityResult(Stabilised(derived, finding), self._writing)
 
     def report(self, folder: str | os.PathLike[str]) -> Path:
-        """Write the report into a folder; the path of its main LaTeX file."""
-        from symplant.face.work import report_and_check
-        from symplant.writing.report import write_report
+        """Write the report into a folder; the path of its main LaTeX file.
 
-        return write_report(report_and_check(self.model, self._derive()), Path(folder)).main
+        Errors: InputError if the folder cannot be written; CheckError if a printed formula does not
+        read back as what was derived (the report then says so itself and must not be used).
+        """
+        from symplant.derivation.stability import stability
+        from symplant.writing.report import compose_report, write_report
+
+        derived = self._derive()
+        finding = stability(derived.derivation)
+        composed = compose_report(derived.derivation, derived.substitution, finding, derived.checks)
+        written = write_report(composed, Path(folder))
+        if not composed.passed:
+            raise CheckError(tuple(check for check in composed.checks if not check.passed))
+        return written.main
 
     def _derive(self) -> Derived:
         from symplant.face.work import derive_and_check

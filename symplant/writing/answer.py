@@ -14,17 +14,18 @@ if TYPE_CHECKING:
     from symplant.algebra.ratio import Ratio
     from symplant.algebra.ring import Element, Ring
     from symplant.derivation.derive import Channel, Derivation, Scaled
-    from symplant.derivation.stability import StabilityFinding
+    from symplant.derivation.stability.finding import Condition, Endpoint, StabilityFinding
     from symplant.errors import Fault
     from symplant.plant.model import Model
+    from symplant.writing.report import WrittenReport
 
 __all__ = [
     "FORMAT",
     "Answer",
     "check_rows",
     "derive_answer",
-    "finding_answer",
     "fault_answer",
+    "finding_answer",
     "polynomial_answer",
     "stability_answer",
 ]
@@ -129,24 +130,29 @@ def stability_answer(
         **_head("stability", model),
         "verdict": str(finding.verdict),
         "because": finding.because,
-        "conditions": [
-            {
-                "expression": factored_text(ring, condition.element),
-                "relation": condition.relation,
-                "latex": latex(ring, condition.element) + f" {condition.relation} 0",
-                "status": condition.status,
-                "because": condition.because,
-                "name": condition.name,
-            }
-            for condition in finding.conditions
-        ],
+        "conditions": [_condition(ring, condition, latex) for condition in finding.conditions],
         "crossings": [
             {
                 "expression": factored_text(ring, crossing.element),
                 "at": crossing.at,
                 "frequency_squared": _ratio(crossing.frequency_squared),
+                "detail": crossing.detail,
             }
             for crossing in finding.crossings
+        ],
+        "marginal_conditions": [_condition(ring, c, latex) for c in finding.marginal_conditions],
+        "intervals": [
+            {"from": _endpoint(i.start), "to": _endpoint(i.end), "verdict": i.verdict}
+            for i in finding.intervals
+        ],
+        "along": finding.along,
+        "special_cases": [
+            {
+                "where": factored_text(ring, case.where),
+                "verdict": case.finding.verdict,
+                "conditions": [_condition(ring, c, latex) for c in case.finding.conditions],
+            }
+            for case in finding.special_cases
         ],
         "witnesses": {
             side: None if point is None else {name: str(value) for name, value in point.items()}
@@ -173,6 +179,47 @@ def fault_answer(command: str, faults: Sequence[Fault]) -> Answer:
             {"file": f.file, "place": f.place, "reason": f.reason, "suggestion": f.suggestion} for f in faults
         ],
     }
+
+
+def _condition(ring: Ring, condition: Condition, latex: Latex) -> Answer:
+    return {
+        "expression": factored_text(ring, condition.element),
+        "relation": condition.relation,
+        "latex": f"{latex(ring, condition.element)} {condition.relation} 0",
+        "status": condition.status,
+        "because": condition.because,
+        "name": condition.name,
+        "solved": [
+            {"parameter": b.letter, "relation": b.relation, "value": ratio_text(b.value)}
+            for b in condition.solved
+        ],
+    }
+
+
+def _endpoint(end: Endpoint | None) -> Answer | str | None:
+    """An exact end as text, another by two decimals that enclose it."""
+    if end is None:
+        return None
+    return decimal_text(end.exact) if end.exact is not None else {"lower": end.lower, "upper": end.upper}
+
+
+def decimal_text(value: Fraction) -> str:
+    """An exact number as text: a decimal where it ends, else a fraction.
+
+    >>> decimal_text(Fraction(15, 2)), decimal_text(Fraction(470, 19))
+    ('7.5', '470/19')
+    """
+    rest, twos, fives = value.denominator, 0, 0
+    while rest % 2 == 0:
+        rest, twos = rest // 2, twos + 1
+    while rest % 5 == 0:
+        rest, fives = rest // 5, fives + 1
+    places = max(twos, fives)
+    if rest != 1 or places > 15:
+        return str(value)
+    digits = str(abs(value.numerator) * 10**places // value.denominator).rjust(places + 1, "0")
+    sign = "-" if value < 0 else ""
+    return f"{sign}{digits[:-places]}.{digits[-places:]}" if places else sign + digits
 
 
 def _head(command: str, model: Model) -> Mapping[str, Any]:
@@ -210,4 +257,15 @@ def finding_answer(finding: Scaled | Channel, latex: Latex) -> Answer:
                 "relative_degree": finding.relative_degree,
             }
         ]
+    }
+
+
+def report_answer(model: Model, written: WrittenReport, checks: Sequence[Check]) -> Answer:
+    """What `report` wrote."""
+    return {
+        **_head("report", model),
+        "main": str(written.main),
+        "pdf": None if written.pdf is None else str(written.pdf),
+        "note": written.note,
+        "checks": check_rows(checks),
     }

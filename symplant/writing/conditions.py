@@ -176,4 +176,5 @@ def _by_sign(ring: Ring, element: Element) -> tuple[Element, Element]:
 
 
 def _compared(trees: ElementTrees, left: Element, right: Element, relation: str) -> Statement:
-    return Statement(trees.shortest(left), relation, trees.shortest(right), (left - right, trees.ring.one))
+    difference = trees.ring.reduce(left - right)
+    return Statement(trees.shortest(left), relation, trees.shortest(right), (difference, trees.ring.one))

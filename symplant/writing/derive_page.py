@@ -48,11 +48,17 @@ def finding_page(finding: Scaled | Channel, width: int = 100, unicode: bool = Tr
     if isinstance(finding, Scaled):
         plain = PlainFormulas(finding.polynomial.ring, width - 2, unicode)
         page.heading("Characteristic polynomial")
-        page.add(plain.polynomial(_name("Δ", finding.polynomial.ring.variable, unicode), finding.polynomial.element))
+        page.add(
+            plain.polynomial(
+                _name("Δ", finding.polynomial.ring.variable, unicode), finding.polynomial.element
+            )
+        )
         return page
     plain = PlainFormulas(finding.numerator.ring, width - 2, unicode)
     page.heading(f"Numerator of {finding.name}")
-    page.add(plain.polynomial(_name("N", finding.numerator.ring.variable, unicode), finding.numerator.element))
+    page.add(
+        plain.polynomial(_name("N", finding.numerator.ring.variable, unicode), finding.numerator.element)
+    )
     return page
 
 
@@ -139,7 +145,8 @@ class _Writer:
             if channel.common_factor.degree > 0:
                 factor = self.plain.text(channel.common_factor.element)
                 self.page.add(
-                    f"common factor {factor}: not cancelled here; this channel does not show that mode", "doubt"
+                    f"common factor {factor}: not cancelled here; this channel does not show that mode",
+                    "doubt",
                 )
 
     def zero(self) -> None:
@@ -190,4 +197,6 @@ class _Writer:
         factor = self.plain.text(top) if len(top) == 1 else f"({self.plain.text(top)})"
         if not bottom.is_one():
             factor += f"/({self.plain.text(bottom)})"
-        self.page.add(f"= {factor} · {determinant}" if self.unicode else f"= {factor} * {determinant}", "quiet")
+        self.page.add(
+            f"= {factor} · {determinant}" if self.unicode else f"= {factor} * {determinant}", "quiet"
+        )

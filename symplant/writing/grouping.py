@@ -145,8 +145,10 @@ class ShapeFinder:
     def drawn(self, element: Element) -> Shape:
         """By falling powers of the variable; what all terms share stands in front unless that is longer."""
         whole = self.polynomial(element)
+        if len(element) < 2:
+            return whole
         value, powers = common((value, dict(powers)) for value, powers in self.ring.terms(element))
-        if len(element) < 2 or (value == 1 and not powers):
+        if value == 1 and not powers:
             return whole
         rest = element // self._element([(value, powers)])
         sign, inside = unsigned(self.polynomial(rest))

@@ -66,7 +66,7 @@ class LatexWriter(TreeWriter):
     sign = ("-", BINARY)
     times = (r"\cdot ", 0.722)
     loose = (r"\, ", THIN)
-    over = (r"\big/ ", 0.5)
+    over = (r"\big/ ", 0.58)
     pair = 2 * BRACKETS[0] + INNER
     gap = 0.0
 

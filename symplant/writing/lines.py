@@ -134,7 +134,7 @@ class _Setter:
                 loose = False
                 continue
             if i:
-                self.put(*self.writer.loose)
+                self.put(*(self.writer.loose if _bracket_in(factor) else self.writer.times))
             behind = sum(f.width + self.writer.loose[1] for f in factors[i + 1 :]) + tail
             behind = behind if behind < self.room(level) / 3 else 0.0
             self._break(factor, level, behind, alone=len(factors) == 1)

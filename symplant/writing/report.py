@@ -215,5 +215,3 @@ def _first_error(log: Path) -> str:
         return ""
     lines = log.read_text(encoding="utf-8", errors="replace").splitlines()
     return next((line[2:] for line in lines if line.startswith("! ")), "")
-
-

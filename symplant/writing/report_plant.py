@@ -64,7 +64,8 @@ def vectors(model: Model, spelling: Spelling) -> str:
         return rf"\left( {inner} \right)"
 
     return (
-        rf"with the states $\mathbf{{x}} = {row(model.states)}$, the inputs $\mathbf{{u}} = {row(model.inputs)}$ "
+        rf"with the states $\mathbf{{x}} = {row(model.states)}$, "
+        rf"the inputs $\mathbf{{u}} = {row(model.inputs)}$ "
         rf"and the outputs $\mathbf{{y}} = {row(model.outputs)}$, where"
     )
 
@@ -141,4 +142,3 @@ def _count(number: int, noun: str) -> str:
     words = ("no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten")
     word = words[number] if number < len(words) else str(number)
     return f"{word} {noun}" if number == 1 else f"{word} {noun}s"
-

@@ -78,8 +78,8 @@ def _channel(derivation: Derivation, channel: Channel, index: str, printer: Prin
     if factor.degree > 0:
         text = printer.inline(f"common factor {channel.name}", factor.element)
         parts.append(
-            rf"Numerator and denominator share the factor ${text}$. It is not cancelled here: the mode behind "
-            "it is in the plant, though this channel does not show it."
+            rf"Numerator and denominator share the factor ${text}$. It is not cancelled here: the mode "
+            "behind it is in the plant, though this channel does not show it."
         )
     return {
         "heading": rf"\boldmath ${y}$ over ${u}$",
@@ -159,10 +159,7 @@ def stability_section(finding: StabilityFinding, printer: Printer) -> str:
             "\\begin{itemize}\n" + "\n".join(rows) + "\n\\end{itemize}"
         )
     if dropped:
-        rows = [
-            f"\\item {tex_text(c.name)}: {tex_text(c.status)}; {tex_text(c.because)}."
-            for c in dropped
-        ]
+        rows = [f"\\item {tex_text(c.name)}: {tex_text(c.status)}; {tex_text(c.because)}." for c in dropped]
         parts.append(
             "Conditions that need no attention:\n\\begin{itemize}\n" + "\n".join(rows) + "\n\\end{itemize}"
         )
@@ -182,7 +179,9 @@ def assumptions(derivation: Derivation, printer: Printer) -> str:
     if elements:
         formulas = [printer.inline("assumed nonzero", element) for element in elements]
         listed = ", ".join(rf"${formula}$" for formula in formulas)
-        parts.append(f"The entries of the matrices were divided by these, which are taken to be nonzero: {listed}.")
+        parts.append(
+            f"The entries of the matrices were divided by these, which are taken to be nonzero: {listed}."
+        )
     else:
         parts.append("No entry of the matrices is divided by a parameter.")
     for tree, relation in derivation.pencil.setting.domain:
@@ -193,8 +192,8 @@ def assumptions(derivation: Derivation, printer: Printer) -> str:
             f"Equality of expressions is not fully decided here: {tex_text(derivation.ring.undecidable)}."
         )
     parts.append(
-        "Degrees and common factors are those for generic values of the parameters; at special values leading "
-        "coefficients may vanish and further factors may become common."
+        "Degrees and common factors are those for generic values of the parameters; at special values "
+        "leading coefficients may vanish and further factors may become common."
     )
     return "\n\n".join(parts)
 

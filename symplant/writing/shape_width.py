@@ -24,8 +24,10 @@ class ShapeWidths:
 
     def width(self, shape: Shape) -> float:
         """Estimated width of a shape on one line."""
+        if not shape:
+            return self.number(0)
         total = self.writer.plus[1] * (len(shape) - 1)
-        if shape and shape[0].value < 0:
+        if shape[0].value < 0:
             total += self.writer.sign[1]
         return total + sum(map(self.summand, shape))
 
@@ -72,7 +74,7 @@ class ShapeWidths:
         return known
 
     def number(self, value: int) -> float:
-        """Width of a positive integer."""
+        """Width of an integer that is not negative."""
         known = self._numbers.get(value)
         if known is None:
             known = self._numbers[value] = self.writer.write(Number(Fraction(value))).width

@@ -82,10 +82,6 @@ class Spelling:
                 whose = f"that of {other}" if other in letters else f"kept for {other}"
                 hint = f'give {name} one of its own: latex = "..."'
                 faults.append(Fault(place, f"the LaTeX spelling '{latex}' is {whose}", hint, source))
-            stem, _, exponent = canonical.rpartition("^")
-            if stem and exponent.strip("{}").isdecimal():
-                hint = "use an index or a prime instead"
-                faults.append(Fault(place, f"the LaTeX spelling '{latex}' reads as a power", hint, source))
         if faults:
             raise InputError(faults)
         self.inverse: dict[str, str] = {latex: name for name, latex in self.names.items()}

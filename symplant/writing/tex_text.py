@@ -46,10 +46,33 @@ _SPECIAL = {
     "\u2265": r"\ensuremath{\ge}",
     "\u00a0": "~",
 }
-_GREEK = (
-    "alpha beta gamma delta varepsilon zeta eta theta iota kappa lambda mu nu xi omicron pi rho varsigma "
-    "sigma tau upsilon varphi chi psi omega"
-).split()
+_GREEK = [
+    "alpha",
+    "beta",
+    "gamma",
+    "delta",
+    "varepsilon",
+    "zeta",
+    "eta",
+    "theta",
+    "iota",
+    "kappa",
+    "lambda",
+    "mu",
+    "nu",
+    "xi",
+    "omicron",
+    "pi",
+    "rho",
+    "varsigma",
+    "sigma",
+    "tau",
+    "upsilon",
+    "varphi",
+    "chi",
+    "psi",
+    "omega",
+]
 _GREEK_CAPITALS = {"Γ": "Gamma", "Δ": "Delta", "Θ": "Theta", "Λ": "Lambda", "Ξ": "Xi", "Π": "Pi"} | {
     "Σ": "Sigma",
     "Υ": "Upsilon",

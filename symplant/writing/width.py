@@ -123,7 +123,7 @@ class _Measure:
                 continue
             if text == "'":
                 self.next += 1
-                total, scripts = total + 0.25, scripts + 0.25
+                total += 0.28
                 continue
             scripts = 0.0
             total += self.item()
@@ -137,7 +137,7 @@ class _Measure:
         text = match[0]
         self.next += 1
         if match["size"]:
-            return _SIZES[match["size"]]
+            return _SIZES[match["size"]] + (0.12 if text.endswith("/") else 0.0)
         if match["fence"]:
             return self._fenced()
         if text == "{":

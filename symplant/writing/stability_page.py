@@ -1,0 +1,235 @@
+"""What `stability` prints for people: the verdict, the conditions that bind, where stability is lost."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+from symplant.algebra.verdict import Check
+from symplant.derivation.stability.finding import (
+    Bound,
+    Condition,
+    Crossing,
+    Endpoint,
+    StabilityFinding,
+    StabilityInterval,
+)
+from symplant.writing.derive_page import add_checks, add_failures, add_head
+from symplant.writing.page import Page
+from symplant.writing.plain import PlainFormulas
+
+if TYPE_CHECKING:
+    from symplant.algebra.ratio import Ratio
+    from symplant.derivation.stability.finding import Point
+    from symplant.plant.model import Model
+
+__all__ = ["endpoint_text", "routh_rows", "stability_page"]
+
+SPECIAL = {
+    "zero pivot": "zero pivot: the row was replaced by one that has a pivot and the same counts",
+    "zero row": "zero row: replaced by the derivative of the auxiliary polynomial of the row above",
+}
+
+VERDICTS = {
+    "stable": ("STABLE for every admissible value of the parameters", "good"),
+    "unstable": ("NOT asymptotically stable for any admissible value of the parameters", "bad"),
+    "marginal": ("MARGINAL: at the boundary of stability for every admissible value", "doubt"),
+    "conditional": ("CONDITIONAL: stable for some admissible values, not for others", "doubt"),
+    "undecided": ("UNDECIDED over the whole parameter box", "doubt"),
+}
+AT = {
+    "origin": "a root passes through the origin",
+    "imaginary pair": "a pair of roots crosses the imaginary axis",
+    "infinity": "a root passes through infinity",
+    "unit circle": "roots cross the unit circle",
+}
+
+
+def stability_page(
+    finding: StabilityFinding,
+    model: Model,
+    checks: Sequence[Check] = (),
+    width: int = 100,
+    unicode: bool = True,
+    routh: bool = False,
+) -> Page:
+    """The page of a stability finding."""
+    page = Page(width)
+    add_failures(page, checks)
+    add_head(page, model)
+    page.heading("Verdict")
+    words, role = VERDICTS[finding.verdict]
+    page.add(words, role)
+    if finding.because:
+        page.rows([("", finding.because)], indent=0)
+    writer = _Writer(finding, page, unicode)
+    writer.conditions()
+    writer.crossings()
+    writer.intervals()
+    writer.special_cases()
+    writer.witnesses()
+    if routh:
+        writer.array()
+    writer.dropped()
+    writer.notes()
+    if checks:
+        add_checks(page, checks)
+    return page
+
+
+def endpoint_text(end: Endpoint | None, infinite: str) -> str:
+    """An end of an interval: exact, or the digits that are certain."""
+    if end is None:
+        return infinite
+    if end.exact is not None:
+        return str(end.exact)
+    common = ""
+    for low, high in zip(end.lower, end.upper, strict=False):
+        if low != high:
+            break
+        common += low
+    return f"{common}..." if len(common) > 3 else f"[{end.lower}, {end.upper}]"
+
+
+class _Writer:
+    """Writes the parts of one finding to a page."""
+
+    def __init__(self, finding: StabilityFinding, page: Page, unicode: bool) -> None:
+        self.finding, self.page, self.unicode = finding, page, unicode
+        self.plain = PlainFormulas(finding.ring, page.width - 4, unicode)
+
+    def conditions(self) -> None:
+        """The conditions that bind, each also solved for a letter where that is possible."""
+        never = [c for c in self.finding.conditions if c.status == "never"]
+        if never:
+            self.page.heading("Cannot be met")
+            for condition in never:
+                self._condition(condition)
+        if not self.finding.binding:
+            return
+        heading = "Asymptotically stable exactly where, within the ranges and signs declared,"
+        self.page.heading(heading if not never else "The other conditions")
+        for condition in self.finding.binding:
+            self._condition(condition)
+
+    def _condition(self, condition: Condition) -> None:
+        self.page.add(self.plain.condition(condition.element, condition.relation))
+        for bound in condition.solved:
+            self.page.add(self._bound(bound), "", 6)
+        detail = (
+            condition.name if condition.status == "required" else f"{condition.name}: {condition.because}"
+        )
+        self.page.rows([("", detail)], ["doubt" if condition.status == "undecided" else "quiet"], indent=4)
+
+    def _bound(self, bound: Bound) -> str:
+        value = self.plain.ratio("", bound.value.numerator, bound.value.denominator)
+        head = f"{self.plain.text(self.finding.ring.gen(bound.letter))} {bound.relation} "
+        lines = value.split("\n")
+        if len(lines) == 1:
+            return head + value
+        middle = 1 if len(lines) == 3 else 0
+        return "\n".join((head if i == middle else " " * len(head)) + line for i, line in enumerate(lines))
+
+    def crossings(self) -> None:
+        """Where the boundary of stability is reached."""
+        if not self.finding.crossings:
+            return
+        self.page.heading("Stability is lost where")
+        for crossing in self.finding.crossings:
+            self._crossing(crossing)
+
+    def _crossing(self, crossing: Crossing) -> None:
+        self.page.add(f"{self.plain.factored('', crossing.element)} = 0")
+        self.page.add(crossing.detail or AT[crossing.at], "quiet", 4)
+        if crossing.frequency_squared is not None:
+            ratio = crossing.frequency_squared
+            name = "ω²" if self.unicode else "omega^2"
+            self.page.add(
+                self.plain.ratio(f"at the frequency {name}", ratio.numerator, ratio.denominator), "", 4
+            )
+
+    def intervals(self) -> None:
+        """The stability intervals of one letter."""
+        if not self.finding.intervals:
+            return
+        letter = self.finding.along or "the parameter"
+        self.page.heading(f"Along {letter}")
+        self.page.rows([(self._interval(letter, i), i.verdict) for i in self.finding.intervals])
+
+    def _interval(self, letter: str, interval: StabilityInterval) -> str:
+        infinity = "∞" if self.unicode else "infinity"
+        low = endpoint_text(interval.start, f"-{infinity}")
+        return f"{low} < {letter} < {endpoint_text(interval.end, infinity)}"
+
+    def special_cases(self) -> None:
+        """Where another polynomial decides."""
+        for case in self.finding.special_cases:
+            self.page.heading(f"Where {self.plain.text(case.where)} = 0")
+            words, role = VERDICTS[case.finding.verdict]
+            self.page.add(words, role)
+            for condition in case.finding.binding:
+                self._condition(condition)
+
+    def witnesses(self) -> None:
+        """Exact values that show stability and instability."""
+        rows = []
+        for side, point in self.finding.witnesses.items():
+            if point:
+                rows.append((f"{'not ' if side == 'unstable' else ''}stable at", _values(point)))
+        if rows:
+            self.page.heading("Witnesses")
+            self.page.rows(rows)
+
+    def array(self) -> None:
+        """Routh's array, row by row."""
+        self.page.heading("Routh array" + (" (after z = (1 + w)/(1 - w))" if self.finding.discrete else ""))
+        for text in routh_rows(self.finding, self.plain):
+            self.page.add(text)
+
+    def dropped(self) -> None:
+        """The conditions that need no attention, with the reason."""
+        dropped = [c for c in self.finding.conditions if c.status in ("always", "implied")]
+        if dropped:
+            self.page.heading("Conditions that need no attention")
+            self.page.rows([(c.name, f"{c.status}: {c.because}") for c in dropped])
+
+    def notes(self) -> None:
+        """What else should be known."""
+        if self.finding.notes:
+            self.page.heading("Notes")
+            for note in self.finding.notes:
+                self.page.rows([("", note)], indent=0)
+
+
+def _values(point: Point) -> str:
+    return ", ".join(f"{name} = {value}" for name, value in point.items()) or "(no parameters)"
+
+
+def routh_rows(finding: StabilityFinding, plain: PlainFormulas) -> list[str]:
+    """The rows of Routh's array as text, the special ones explained."""
+    variable = "w" if finding.discrete else finding.ring.variable
+    rows = finding.routh.rows
+    cells = [[_cell(plain, entry) for entry in row.entries] for row in rows]
+    count = max(len(row) for row in cells)
+    widths = [max((len(row[j]) for row in cells if j < len(row)), default=0) for j in range(count)]
+    narrow = sum(widths) + 3 * count < plain.columns - 8
+    lines = []
+    for row, texts in zip(rows, cells, strict=True):
+        head = f"{variable}^{row.power}"
+        if narrow:
+            texts = [text.center(width) for text, width in zip(texts, widths, strict=False)]
+            lines.append(f"{head:<5} | " + "   ".join(texts).rstrip())
+        else:
+            lines += [f"{head:<5} | {text}" if j == 0 else f"      | {text}" for j, text in enumerate(texts)]
+        if row.kind in SPECIAL:
+            lines.append(f"      | ({SPECIAL[row.kind]})")
+    return lines
+
+
+def _cell(plain: PlainFormulas, entry: Ratio) -> str:
+    top = plain.text(entry.numerator)
+    if entry.denominator.is_one():
+        return top
+    bottom = plain.text(entry.denominator)
+    top = f"({top})" if len(entry.numerator) > 1 else top
+    return f"{top}/({bottom})" if not bottom.isalnum() else f"{top}/{bottom}"
