@@ -25,6 +25,14 @@ _RESIDUE_POINTS = 3
 def check_common_factor(channel: Channel, formulas: Formulas, points: Sequence[Point]) -> Check:
     """The common factor of a channel: division leaves no remainder at the points, and modulo a prime the
     greatest common divisor has no higher degree (it never has a lower one than that over the letters).
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.arguments import model_from_arguments
+    >>> derivation = derive(model_from_arguments([["-a", 0], [0, "-b"]], [[1], [1]], [[1, 0]]))
+    >>> point = Point({"a": Fraction(2), "b": Fraction(3), "s": Fraction(5)})
+    >>> check = check_common_factor(derivation.channels[0], Formulas(derivation.ring), [point])
+    >>> check.what, check.verdict.value
+    ('common factor y1/u1', 'proved')
     """
     ring, what = formulas.ring, f"common factor {channel.name}"
     division = _DIVISION.format(s=ring.variable)

@@ -59,9 +59,9 @@ class Draws:
         if lower is not None and upper is not None:
             return self._within(lower, upper)
         if lower is not None:
-            return lower + self.size()
+            return lower + self.size() or lower + Fraction(1, 2)
         if upper is not None:
-            return upper - self.size()
+            return upper - self.size() or upper - Fraction(1, 2)
         return self.size() * self.one_of((1, -1))
 
     def _within(self, lower: Fraction, upper: Fraction) -> Fraction:

@@ -14,7 +14,7 @@ from symplant.errors import InputError
 from symplant.reading.arithmetic import MAX_LENGTH, read_arithmetic
 from symplant.reading.exponents import MAX_EXPONENT
 
-__all__ = ["MAX_TERMS", "Formula", "Formulas"]
+__all__ = ["MAX_TERMS", "Formula", "Formulas", "is_readable"]
 
 #: A polynomial with more terms is not read from its text.
 MAX_TERMS = 400
@@ -41,7 +41,8 @@ class Formula:
         self.unreadable = ""
         self._tree: Node | None = None
         self._terms: Terms | None = None
-        if _is_readable(element):
+        self._values: list[tuple[Point, Any]] = []
+        if is_readable(element):
             written = text(ring, element)
             if len(written) <= MAX_LENGTH:
                 self._read(written)
@@ -65,7 +66,14 @@ class Formula:
         return self._terms
 
     def value(self, point: Point) -> Any:
-        """The value at a point; see `evaluation.evaluate` for the errors."""
+        """The value at a point, worked out once; see `evaluation.evaluate` for the errors."""
+        for known, value in self._values:
+            if known is point:
+                return value
+        self._values.append((point, self._evaluated(point)))
+        return self._values[-1][1]
+
+    def _evaluated(self, point: Point) -> Any:
         if self._tree is not None:
             return point.evaluate(self._tree)
         return horner(self.terms.coefficients(point), point.scalars.get(self.ring.variable))
@@ -87,7 +95,8 @@ class Formulas:
         return self._known[-1]
 
 
-def _is_readable(element: Element) -> bool:
-    if len(element) > MAX_TERMS or any(degree > MAX_EXPONENT for degree in element.degrees()):
+def is_readable(element: Element, max_terms: int = MAX_TERMS) -> bool:
+    """Whether the readers take the text of an element: its length, its exponents, its numbers."""
+    if len(element) > max_terms or any(degree > MAX_EXPONENT for degree in element.degrees()):
         return False
     return all(abs(int(value)).bit_length() <= _MAX_BITS for value in element.coeffs())

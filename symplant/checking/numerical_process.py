@@ -22,6 +22,7 @@ from symplant.checking.eigenvalues import answer, import_libraries
 __all__ = ["NumericalProcess"]
 
 _LENGTH = struct.Struct("!Q")
+_STANDARD = 2  # the last of the standard descriptors
 _PULSE = 0.5  # seconds between two looks at who the parent is
 
 
@@ -30,6 +31,11 @@ class NumericalProcess:
 
     Without `os.fork`, in a process of several threads (where forking is not safe), and where NumPy is
     loaded already, the work is done in this process instead, when it is asked for.
+
+    >>> process = NumericalProcess()
+    >>> process.ask("1 0.5").split()[:3]  # the size of A, and its eigenvalue as a complex number
+    ['0.5', '0.5', '0.0']
+    >>> process.close()
     """
 
     def __init__(self) -> None:
@@ -37,8 +43,12 @@ class NumericalProcess:
         self._end: weakref.finalize[[int, int, int, int], NumericalProcess] | None = None
         if not hasattr(os, "fork") or threading.active_count() > 1 or "numpy" in sys.modules:
             return
-        requests, self._requests = os.pipe()
-        self._answers, answers = os.pipe()
+        pipes = (*os.pipe(), *os.pipe())
+        if min(pipes) <= _STANDARD:  # a standard descriptor was closed: not a place to build on
+            for descriptor in pipes:
+                os.close(descriptor)
+            return
+        requests, self._requests, self._answers, answers = pipes
         parent = os.getpid()
         self.pid = os.fork()
         if self.pid == 0:
@@ -64,6 +74,7 @@ class NumericalProcess:
         """End the process on the side and wait until it is gone; may be called again."""
         if self._end is not None:
             self._end()
+            self._end = None
 
 
 def _ended(pid: int, parent: int, *descriptors: int) -> None:
@@ -103,10 +114,10 @@ def _serve(requests: int, answers: int, parent: int) -> NoReturn:
         for number in (signal.SIGTERM, signal.SIGPIPE):
             signal.signal(number, signal.SIG_DFL)
         nowhere = os.open(os.devnull, os.O_RDWR)
-        for standard in range(3):
+        for standard in range(_STANDARD + 1):
             os.dup2(nowhere, standard)
         low, high = sorted((requests, answers))
-        os.closerange(3, low)
+        os.closerange(_STANDARD + 1, low)
         os.closerange(low + 1, high)
         os.closerange(high + 1, 1 << 16)  # above all pipes whose ends others wait for
         for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):

@@ -56,6 +56,12 @@ def second_opinion_request(derivation: Derivation) -> Request:
     """The eigenvalue problems of (A, E) and, for a square plant, of the system pencil, at nominal values.
 
     Parameters without nominal value get a stand-in, and `note` says so.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.arguments import model_from_arguments
+    >>> request = second_opinion_request(derive(model_from_arguments([["-a"]], [[1]], [[1]])))
+    >>> [question.what for question in request.questions], request.note
+    (['characteristic polynomial', 'zero polynomial'], 'a has no nominal value: taken as 3/7')
     """
     reason, note = "", ""
     for shift in _SHIFTS:

@@ -51,6 +51,12 @@ def check_by_substitution(
     determinants are found by elimination over fractions, and the other side is the printed text, read
     again.  Where functions have no rational values, balls take the place of fractions and the verdict
     is `agrees`.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.arguments import model_from_arguments
+    >>> found = check_by_substitution(derive(model_from_arguments([["-k/m"]], [["1/m"]], [[1]])))
+    >>> found.checks[0].what, found.checks[0].verdict.value, found.rows[0].left == found.rows[0].right
+    ('characteristic polynomial', 'proved', True)
     """
     stage(STAGE)
     with ball_precision():
