@@ -25,7 +25,7 @@ def letters_in(ring: Ring, elements: Iterable[Element]) -> list[str]:
     ['k']
     """
     found: set[str] = set()
-    for key in ring.used(elements):
+    for key in ring.used(element for element in elements if element):
         found |= names_in(ring.meanings[ring.position[key]])
     return [letter for letter in ring.letters if letter in found]
 
@@ -46,7 +46,7 @@ class SignTable:
         import numpy as np
 
         self.ring = ring
-        self.keys = sorted(ring.used(elements), key=lambda key: ring.position[key])
+        self.keys = sorted(ring.used(e for e in elements if e), key=lambda key: ring.position[key])
         self.functions = bool(set(self.keys) - set(ring.letters))
         self.compiled: list[tuple[Any, Any]] = []
         places = [ring.position[key] for key in self.keys]

@@ -108,6 +108,8 @@ def certified_sign(ring: Ring, element: Element, point: Mapping[str, Fraction]) 
     1
     """
     element = ring.reduce(element)
+    if not element:
+        return 0
     used = ring.used([element])
     if used <= set(ring.letters):
         exact = ring.value(element, point)

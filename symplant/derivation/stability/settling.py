@@ -6,7 +6,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 from symplant.algebra.box import Sign
-from symplant.algebra.decide import decide_positive
+from symplant.algebra.decide import Decision, decide_positive
 from symplant.algebra.decide_factors import Radical, radical
 from symplant.algebra.decide_search import find_sign
 from symplant.algebra.ring import Element
@@ -132,7 +132,11 @@ def settle(subject: Subject, candidate: Candidate, element: Element, kernel: Rad
             return Settled((candidate,), element, "never", f"minus it is positive: {opposite.because}", True)
         if kernel.sign < 0 and all(exponent == 2 for _, exponent in kernel.factors):
             return Settled((candidate,), element, "never", "it is minus a square")
-        holds = opposite.witness
+        return _required(candidate, kernel, opposite.witness, decision)
+    return _required(candidate, kernel, holds, decision)
+
+
+def _required(candidate: Candidate, kernel: Radical, holds: Point | None, decision: Decision) -> Settled:
     fails = _at(decision.witness) if decision.witness else decision.because
     return Settled((candidate,), kernel.element, "required", f"holds {_at(holds)}, fails {fails}")
 
