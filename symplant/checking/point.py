@@ -43,8 +43,16 @@ class Point:
         return self.values if self.exact else {name: ball(value) for name, value in self.values.items()}
 
     def evaluate(self, node: Node) -> Any:
-        """The value of a tree; see `evaluation.evaluate` for the errors."""
-        return evaluate(node, self.scalars, self.arithmetic)
+        """The value of a tree, worked out once; see `evaluation.evaluate` for the errors."""
+        known = self._known.get(id(node))
+        if known is None:
+            known = self._known[id(node)] = (node, evaluate(node, self.scalars, self.arithmetic))
+        return known[1]
+
+    @cached_property
+    def _known(self) -> dict[int, tuple[Node, Any]]:
+        """Values of trees by identity; the trees are held, so that no identity is used twice."""
+        return {}
 
     def __str__(self) -> str:
         return ", ".join(f"{name} = {value}" for name, value in self.values.items())
