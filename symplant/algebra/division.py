@@ -5,7 +5,7 @@ from __future__ import annotations
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element
 
-__all__ = ["coprime_basis", "divide", "divides", "factors_in_variable", "normalised", "product"]
+__all__ = ["coprime_basis", "divide", "divides", "factors_in_variable", "normalised", "product", "quotient"]
 
 
 def divide(high: Polynomial, low: Polynomial) -> Polynomial:
@@ -17,10 +17,19 @@ def divide(high: Polynomial, low: Polynomial) -> Polynomial:
     >>> divide(Polynomial.of(ring, a * s**2 - a**3), Polynomial.of(ring, s - a)).element
     s + a
     """
-    quotient, rest = _pseudo_divide(high, low)
+    return normalised(quotient(high, low))
+
+
+def quotient(high: Polynomial, low: Polynomial) -> Polynomial:
+    """high / low with its content: exact where `low` is primitive and the ring has no relations.
+
+    In a ring with relations it is multiplied by a power of the leading coefficient of `low`.
+    ValueError if `low` does not divide `high`.
+    """
+    result, rest = _pseudo_divide(high, low)
     if not rest.is_zero:
         raise ValueError("not divisible")
-    return normalised(quotient)
+    return result
 
 
 def divides(low: Polynomial, high: Polynomial) -> bool:
@@ -106,14 +115,14 @@ def _pseudo_divide(high: Polynomial, low: Polynomial) -> tuple[Polynomial, Polyn
     if not ring.has_relations and not high.is_zero:
         # In a polynomial ring the primitive parts divide each other exactly when the polynomials do.
         small = low.primitive().element
-        quotient, rest = divmod(high.element, small)
-        if not rest:
-            return Polynomial(ring, quotient), Polynomial(ring, ring.zero)
+        whole, left = divmod(high.element, small)
+        if not left:
+            return Polynomial(ring, whole), Polynomial(ring, ring.zero)
     s = ring.gen(ring.variable)
-    quotient_: Element = ring.zero
-    rest_ = high
-    while not rest_.is_zero and rest_.degree >= low.degree:
-        shift = s ** (rest_.degree - low.degree) * rest_.leading
-        quotient_ = ring.reduce(quotient_ * low.leading + shift)
-        rest_ = Polynomial.of(ring, rest_.element * low.leading - low.element * shift)
-    return Polynomial(ring, quotient_), rest_
+    result: Element = ring.zero
+    rest = high
+    while not rest.is_zero and rest.degree >= low.degree:
+        shift = s ** (rest.degree - low.degree) * rest.leading
+        result = ring.reduce(result * low.leading + shift)
+        rest = Polynomial.of(ring, rest.element * low.leading - low.element * shift)
+    return Polynomial(ring, result), rest

@@ -22,7 +22,7 @@ from symplant.algebra.rank import Rank
 from symplant.algebra.verdict import Verdict
 from symplant.derivation.zeros.blocks import Blocks
 
-__all__ = ["SmithMcMillan", "infinite_orders", "smith_mcmillan"]
+__all__ = ["SmithMcMillan", "hidden_part", "infinite_orders", "smith_mcmillan"]
 
 #: Most minors of the transfer matrix that are looked at.
 MINOR_LIMIT = 4_000
@@ -32,7 +32,7 @@ INFINITE_LIMIT = 250
 
 @dataclass(frozen=True)
 class SmithMcMillan:
-    """c is `hidden`, d/c is `poles`; `system_zeros` is the gcd of the N_IJ of full order, `zeros` that over c."""
+    """`hidden` is c, `poles` d/c, `system_zeros` the gcd of the N_IJ of full order, `zeros` that over c."""
 
     hidden: Polynomial
     poles: Polynomial
@@ -45,7 +45,7 @@ class SmithMcMillan:
 def smith_mcmillan(blocks: Blocks, rank: Rank, decoupling: tuple[Polynomial, Polynomial]) -> SmithMcMillan:
     """Poles and zeros of the transfer matrix; `rank` is that of the pencil, `decoupling` its id and od."""
     characteristic = normalised(blocks.characteristic)
-    hidden, why, settled = _hidden(blocks, characteristic, decoupling)
+    hidden, why, settled = hidden_part(blocks, characteristic, decoupling)
     zeros, complete = _zeros_of_full_order(blocks, rank)
     zeros = zeros if divides(hidden, zeros) else product(zeros, hidden)
     verdict = Verdict.PROVED if settled and complete else Verdict.UNDECIDED
@@ -56,7 +56,7 @@ def smith_mcmillan(blocks: Blocks, rank: Rank, decoupling: tuple[Polynomial, Pol
     )
 
 
-def _hidden(
+def hidden_part(
     blocks: Blocks, characteristic: Polynomial, decoupling: tuple[Polynomial, Polynomial]
 ) -> tuple[Polynomial, str, bool]:
     """c, from above by gcds of minors, from below by the decoupling zeros, which divide it."""

@@ -8,14 +8,15 @@ from fractions import Fraction
 from math import isqrt
 
 from symplant.algebra.box import Box, Interval
+from symplant.algebra.decide import decide_positive
+from symplant.algebra.decide_search import letters_in
 from symplant.algebra.enclosure import certified_sign
-from symplant.algebra.expression import names_in
 from symplant.algebra.points import ladder, points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign
 from symplant.algebra.verdict import Verdict
 
-__all__ = ["Surroundings", "Vanishing", "letters_in", "vanishing"]
+__all__ = ["Surroundings", "Vanishing", "solutions", "square_root", "vanishing"]
 
 #: Points of the box from which a zero is looked for.
 POINTS = 60
@@ -32,9 +33,11 @@ class Surroundings:
 
 @dataclass(frozen=True)
 class Vanishing:
-    """`proved`: vanishes at `witness`, or between the two points of `between` (differing in one letter).
+    """Whether there is a zero in the box.
 
-    Letters that a witness does not name may have any value.  `refuted`: vanishes nowhere in the box.  `undecided`: neither could be shown.
+    `proved`: at `witness` (letters that it does not name may have any value), or between the two
+    points of `between`, which differ in one letter.  `refuted`: vanishes nowhere in the box.
+    `undecided`: neither could be shown.
     """
 
     verdict: Verdict
@@ -55,13 +58,14 @@ def vanishing(ring: Ring, element: Element, around: Surroundings) -> Vanishing:
     >>> vanishing(ring, a + b, Surroundings(box, {})).verdict.value
     'refuted'
     """
+    element = _without_root(ring, element)
     if not element:
         return Vanishing(Verdict.PROVED, "identically zero", {})
     if factored_sign(ring, element).is_nonzero:
         return Vanishing(Verdict.REFUTED, "its terms, by their signs over the box, cannot cancel")
-    letters = sorted(letters_in(ring, (element, *around.nonzero)), key=ring.letters.index)
+    letters = letters_in(ring, (element, *around.nonzero))
     for point in points(around.box, letters, around.nominal, POINTS):
-        for letter, value in _solutions(ring, element, point):
+        for letter, value in solutions(ring, element, point):
             candidate = {**point, letter: value}
             if _admissible(ring, element, candidate, around):
                 return Vanishing(Verdict.PROVED, "an exact zero inside the box", candidate)
@@ -70,17 +74,26 @@ def vanishing(ring: Ring, element: Element, around: Surroundings) -> Vanishing:
         return Vanishing(
             Verdict.PROVED, "its sign differs at the ends of a segment inside the box", None, pair
         )
+    for sign in (1, -1):
+        decision = decide_positive(
+            ring, sign * element, around.box, nominal=around.nominal, nonzero=around.nonzero, effort=POINTS
+        )
+        if decision.verdict is Verdict.PROVED:
+            return Vanishing(Verdict.REFUTED, decision.because)
     return Vanishing(
-        Verdict.UNDECIDED, f"neither its signs nor {POINTS} points of the box settle whether it vanishes"
+        Verdict.UNDECIDED,
+        f"neither the sign ladder nor {POINTS} points of the box settle whether it vanishes",
     )
 
 
-def letters_in(ring: Ring, elements: Sequence[Element]) -> set[str]:
-    """The letters that elements depend on, those inside functions too."""
-    found: set[str] = set()
-    for key in ring.used(elements):
-        found |= names_in(ring.meanings[ring.position[key]])
-    return found & set(ring.letters)
+def _without_root(ring: Ring, element: Element) -> Element:
+    """A square root alone vanishes where its radicand does."""
+    kinds = {function.key: function for function in ring.functions}
+    (only, *rest) = [*ring.used([element]), ""]
+    function = kinds.get(only)
+    if rest == [""] and len(element) == 1 and function is not None and function.kind == "sqrt":
+        return ring.reduce(ring.gen(only) ** 2)
+    return element
 
 
 def _admissible(ring: Ring, element: Element, point: Mapping[str, Fraction], around: Surroundings) -> bool:
@@ -95,7 +108,7 @@ def _interval(box: Box, letter: str) -> Interval:
     return box.intervals.get(letter, Interval())
 
 
-def _solutions(ring: Ring, element: Element, point: Mapping[str, Fraction]) -> Iterator[tuple[str, Fraction]]:
+def solutions(ring: Ring, element: Element, point: Mapping[str, Fraction]) -> Iterator[tuple[str, Fraction]]:
     """Rational values of one letter that make an element of letters alone vanish, the rest as in point."""
     if not ring.used([element]) <= set(ring.letters):
         return
@@ -107,13 +120,14 @@ def _solutions(ring: Ring, element: Element, point: Mapping[str, Fraction]) -> I
             yield letter, -coefficients[0] / coefficients[1]
         elif len(coefficients) == 3:
             c, b, a = coefficients
-            root = _square_root(b * b - 4 * a * c)
+            root = square_root(b * b - 4 * a * c)
             if root is not None:
                 yield letter, (-b + root) / (2 * a)
                 yield letter, (-b - root) / (2 * a)
 
 
-def _square_root(value: Fraction) -> Fraction | None:
+def square_root(value: Fraction) -> Fraction | None:
+    """The square root of a rational number if it is rational."""
     if value < 0:
         return None
     top, bottom = isqrt(value.numerator), isqrt(value.denominator)
