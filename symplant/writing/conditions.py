@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from symplant.algebra.box import Sign
 from symplant.algebra.expression import Node
+from symplant.algebra.factors import factors
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign, pattern_sign
 from symplant.writing.display import Formula, two_sided
@@ -102,16 +103,16 @@ def _without_signed_factors(ring: Ring, element: Element, relation: str) -> Elem
     """The element over all its factors that are positive (nonzero for = and !=) over the box."""
     if not element:
         return element
-    content, factors = element.factor()
-    kept = ring.constant(1 if int(content) > 0 or relation in ("=", "!=") else -1)
-    for factor, exponent in factors:
-        sign = pattern_sign(ring, factor) ** int(exponent)
+    content, found = factors(element)
+    kept = ring.constant(1 if content > 0 or relation in ("=", "!=") else -1)
+    for factor, exponent in found:
+        sign = pattern_sign(ring, factor) ** exponent
         if sign is Sign.NEGATIVE and relation not in ("=", "!="):
             kept = -kept
         elif not (sign is Sign.POSITIVE or (relation in ("=", "!=") and sign.is_nonzero)):
-            kept = kept * factor ** int(exponent)
+            kept = kept * factor**exponent
     if kept.is_constant():  # true or false everywhere: what is said to be positive must still be seen
-        return element // ring.constant(abs(int(content)))
+        return element // ring.constant(abs(content))
     return kept
 
 

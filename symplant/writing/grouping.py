@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from math import inf
 
+from symplant.algebra.factors import factors
 from symplant.algebra.ring import Element, Ring, Term
 from symplant.writing.shape_width import ShapeWidths
 from symplant.writing.shapes import (
@@ -87,23 +88,23 @@ class ShapeFinder:
         """The product of the irreducible factors, monomial in front; None where there is but one factor."""
         if len(element) < 2:
             return None
-        content, factors = element.factor()
-        if len(factors) == 1 and int(factors[0][1]) == 1 and abs(int(content)) == 1:
+        value, found = factors(element)
+        if len(found) == 1 and found[0][1] == 1 and abs(value) == 1:
             return None
-        value, powers, brackets = int(content), dict[int, int](), []
+        powers, brackets = dict[int, int](), list[Bracket]()
         variable = self.ring.position[self.ring.variable]
-        for factor, exponent in factors:
+        for factor, exponent in found:
             if len(factor) == 1:
                 ((number, held),) = self.ring.terms(factor)
-                value *= number ** int(exponent)
-                powers.update({place: e * int(exponent) for place, e in held})
+                value *= number**exponent
+                powers.update({place: e * exponent for place, e in held})
                 continue
             if factor.degrees()[variable]:
                 sign, inside = unsigned(self.polynomial(factor))
             else:
                 sign, inside = steady(self._grouped(self.ring.terms(factor), DEEPEST - 1))
-            value *= sign ** int(exponent)
-            brackets.append(Bracket(inside, int(exponent)))
+            value *= sign**exponent
+            brackets.append(Bracket(inside, exponent))
         brackets.sort(key=lambda b: (self._degree(b.inside, variable) * b.exponent, len(b.inside)))
         order = [(place, powers[place]) for place in self.ring.print_order if place in powers]
         return (turned(Summand(value, tuple(order), tuple(brackets), variable_first=True)),)

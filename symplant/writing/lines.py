@@ -163,7 +163,8 @@ class _Setter:
         if not alone:
             self.put(*self.writer.opening("", False))
         top, bottom = (_bare(self.writer.write(part)) for part in (node.numerator, node.denominator))
-        if top.level > Level.SUM and top.width <= self.room():
+        bare = (top.factors or (top,))[-1].kind == "bare"  # what follows could be taken for its argument
+        if top.level > Level.SUM and top.width <= self.room() and not bare:
             self.put(top.text, top.width)
         else:
             self._bracketed("", top, 1, level, 0.0)
