@@ -5,7 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from symplant.writing.printing import Printer
-from symplant.writing.report_results import channel_sections, characteristic, stability_section, zero_section
+from symplant.writing.report_results import channel_sections, characteristic, zero_section
+from symplant.writing.report_stability import stability_section
 
 if TYPE_CHECKING:
     from symplant.derivation.derive import Derivation

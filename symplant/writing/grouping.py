@@ -33,6 +33,8 @@ MOST_GROUPED, MOST_FACTORED, MOST_FACTORED_WITHIN, MOST_COLLECTED = 3000, 1500, 
 MOST_SWAPPED = 200
 #: Sums with more terms than these fill many lines in any shape: only flat ones are tried.
 MOST_NESTED = 100
+#: How much wider a polynomial may become for what its terms share to stand in front.
+DRAWN = 1.1
 #: Brackets within brackets that grouping may make.
 DEEPEST = 3
 
@@ -144,7 +146,7 @@ class ShapeFinder:
         return tuple(parts)
 
     def drawn(self, element: Element) -> Shape:
-        """By falling powers of the variable; what all terms share stands in front unless that is longer."""
+        """By falling powers of the variable; what all terms share stands in front unless that is much longer."""
         whole = self.polynomial(element)
         if len(element) < 2:
             return whole
@@ -157,7 +159,7 @@ class ShapeFinder:
             (place, dict(powers)[place]) for place in self.ring.print_order if place in dict(powers)
         )
         product = (Summand(value * sign, order, (Bracket(inside),), variable_first=True),)
-        return min(product, whole, key=self.widths.width)
+        return product if self.widths.width(product) <= DRAWN * self.widths.width(whole) else whole
 
     def _grouped(self, terms: Sequence[Term], depth: int) -> Shape:
         """Common letters drawn out, each time those that shorten the sum most."""
@@ -246,7 +248,7 @@ class ShapeFinder:
         for place, exponent in only.powers:
             total[place] = total.get(place, 0) + exponent
         order = tuple((place, total[place]) for place in self.ring.print_order if place in total)
-        return only._replace(value=value * only.value, powers=order)
+        return Summand(value * only.value, order, only.brackets)
 
     def _element(self, terms: Sequence[Term]) -> Element:
         rows: dict[tuple[int, ...], int] = {}

@@ -86,7 +86,8 @@ class LatexWriter(TreeWriter):
             text = rf"\frac{{{grouped(digits.mantissa, _GAP)}}}{{{grouped(digits.below, _GAP)}}}"
             level, kind = Level.QUOTIENT, "fraction"
         else:
-            text, level, kind = grouped(digits.mantissa, _GAP), Level.ATOM, "number"
+            text, level = grouped(digits.mantissa, _GAP), Level.ATOM
+            kind = "figures" if _GAP in text else "number"
             if digits.power:
                 power = f"10^{{{digits.power}}}"
                 text, level = (rf"{text} \cdot {power}", Level.PRODUCT) if text else (power, Level.POWER)
@@ -171,11 +172,13 @@ class LatexWriter(TreeWriter):
         return Written(rf"\left({inside}\right)", space, Level.ATOM, written.node, kind=kind, inside=written)
 
     def glue(self, before: Written, after: Written) -> tuple[str, float]:
-        numeric = after.text[0].isdigit() or (after.kind == "fraction" and before.kind == "number")
+        numeric = after.text[0].isdigit() or (
+            after.kind == "fraction" and before.kind in ("number", "figures")
+        )
         named = before.kind in ("name", "word", "constant")
         if numeric or (named and after.kind == "call") or self._merge(before.node, after.node):
             return r" \cdot ", 0.722
-        if before.kind == "number" and _GAP in before.text:
+        if before.kind == "figures":
             return r" \, ", THIN
         words = (before.kind, after.kind)
         if "word" in words and set(words) <= {"word", "name", "number"}:

@@ -6,7 +6,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING
 
 from symplant.checking.readback import Printed
-from symplant.writing.conditions import Condition, condition
+from symplant.writing.conditions import condition
 from symplant.writing.formula import FormulaWriter
 from symplant.writing.spelling import Spelling
 
@@ -20,7 +20,10 @@ __all__ = ["Printer"]
 
 
 class Printer:
-    """Writes elements as LaTeX and keeps a list of what was written, with the value it stands for."""
+    """Writes elements as LaTeX and keeps a list of what was written, with the value it stands for.
+
+    What is remembered is the very text that is printed, layout and all.
+    """
 
     def __init__(self, model: Model, ring: Ring) -> None:
         self.model, self.ring = model, ring
@@ -34,38 +37,40 @@ class Printer:
 
     def polynomial(self, what: str, lhs: str, element: Element, label: str | None = None) -> str:
         """A polynomial displayed by falling powers of the variable."""
-        formula = self.formulas.polynomial(lhs, element)
-        self._remember(what, formula.body, element)
-        return formula.display("equation", label)
+        display = self.formulas.polynomial(lhs, element).display("equation", label)
+        return self._remember(what, display, element)
 
     def factored(self, what: str, lhs: str, element: Element) -> str:
         """A polynomial displayed as a product; "" where that is no other than the sum."""
         whole, product = self.formulas.polynomial(lhs, element), self.formulas.factored(lhs, element)
         if product.whole == whole.whole:
             return ""
-        self._remember(f"{what}, factored", product.body, element)
-        return product.display("equation")
+        return self._remember(f"{what}, factored", product.display("equation"), element)
 
     def inline(self, what: str, element: Element) -> str:
         """An element for running text, factored."""
-        text = self.formulas.factored_latex(element)
-        self._remember(what, text, element)
-        return text
+        return self._remember(what, self.formulas.factored_latex(element), element)
 
-    def condition(self, what: str, element: Element, relation: str = ">") -> Condition:
-        """A condition in the form that reads best; both of its sides are remembered."""
+    def condition(self, what: str, element: Element, relation: str = ">", label: str | None = None) -> str:
+        """A condition displayed in the form that reads best; its two sides are remembered."""
         stated = condition(self.formulas, element, relation)
+        display = stated.formula.display("equation", label)
         top, bottom = stated.difference
-        # Both sides were printed; their difference is what the condition is about.
-        shown = rf"{stated.left} - \left( {stated.right} \right)"
-        self.printed.append(Printed(what, shown, self.ring, top, bottom))
-        return stated
+        self.printed.append(Printed(what, display, self.ring, top, bottom, two_sided=True))
+        return display
 
-    def ratio(self, what: str, ratio: Ratio) -> str:
-        """A quotient for running text."""
-        text = self.formulas.ratio_latex(ratio.numerator, ratio.denominator)
-        self.printed.append(Printed(what, text, self.ring, ratio.numerator, ratio.denominator))
-        return text
+    def vanishing(self, what: str, element: Element) -> str:
+        """A display that says that an element is zero."""
+        formula = self.formulas.factored("0", element)
+        return self._remember(what, formula.display("equation"), element)
+
+    def ratio(self, what: str, lhs: str, ratio: Ratio, relation: str = "=") -> str:
+        """A quotient displayed behind a left side."""
+        formula = self.formulas.ratio(lhs, ratio.numerator, ratio.denominator)
+        display = formula.display("equation")
+        # The left side is a name of ours; what is read back is what stands behind the relation.
+        self.printed.append(Printed(what, formula.body, self.ring, ratio.numerator, ratio.denominator))
+        return display.replace(f"{lhs} =", f"{lhs} {relation}").replace(f"{lhs} &=", f"{lhs} &{relation}")
 
     def entry(self, what: str, tree: Node, value: Ratio) -> str:
         """An entry of a matrix as it was given; `value` is what the tree amounts to."""
@@ -73,5 +78,6 @@ class Printer:
         self.printed.append(Printed(what, text, self.ring, value.numerator, value.denominator))
         return text
 
-    def _remember(self, what: str, latex: str, element: Element) -> None:
+    def _remember(self, what: str, latex: str, element: Element) -> str:
         self.printed.append(Printed(what, latex, self.ring, element))
+        return latex

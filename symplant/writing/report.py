@@ -24,9 +24,9 @@ from symplant.writing.report_results import (
     assumptions,
     channel_sections,
     characteristic,
-    stability_section,
     zero_section,
 )
+from symplant.writing.report_stability import stability_section
 from symplant.writing.tex_text import tex_text
 
 if TYPE_CHECKING:

@@ -10,24 +10,9 @@ from symplant.writing.tex_text import tex_text
 if TYPE_CHECKING:
     from symplant.algebra.ring import Element
     from symplant.derivation.derive import Channel, Derivation, Scaled
-    from symplant.derivation.stability import Condition, StabilityFinding
     from symplant.writing.printing import Printer
 
-__all__ = ["assumptions", "channel_sections", "characteristic", "stability_section", "zero_section"]
-
-VERDICTS = {
-    "stable": "The plant is asymptotically stable for every admissible value of its parameters.",
-    "unstable": "The plant is asymptotically stable for no admissible value of its parameters.",
-    "marginal": "The plant is at the boundary of stability for every admissible value of its parameters.",
-    "conditional": "The plant is asymptotically stable for some admissible values of its parameters only.",
-    "undecided": "Whether the plant is asymptotically stable could not be settled for all admissible values.",
-}
-AT = {
-    "origin": "a root passes through the origin",
-    "imaginary pair": "a pair of roots passes through the imaginary axis",
-    "infinity": "a root passes through infinity",
-    "unit circle": "roots pass through the unit circle",
-}
+__all__ = ["assumptions", "channel_sections", "characteristic", "zero_section"]
 
 
 def characteristic(derivation: Derivation, printer: Printer) -> tuple[str, str]:
@@ -130,48 +115,6 @@ def _multiplied(printer: Printer, name: str, determinant: str, scaled: Scaled) -
     return rf"Here ${name} = {factor} \cdot {determinant}$."
 
 
-def stability_section(finding: StabilityFinding, printer: Printer) -> str:
-    """Verdict, binding conditions, crossings, and why the other conditions were dropped."""
-    parts = [VERDICTS[str(finding.verdict)]]
-    if finding.because:
-        parts.append(tex_text(_sentence(finding.because)))
-    binding = [c for c in finding.conditions if c.status in ("required", "undecided", "never")]
-    dropped = [c for c in finding.conditions if c.status in ("always", "implied")]
-    if binding:
-        parts.append("It is asymptotically stable exactly where, within the ranges of the parameters,")
-        parts += [_condition(condition, printer) for condition in binding]
-        undecided = [c for c in binding if c.status == "undecided"]
-        if undecided:
-            parts.append(
-                "Whether all of these bind could not be settled; leaving them in is on the safe side."
-            )
-    if finding.crossings:
-        rows = []
-        for crossing in finding.crossings:
-            text = printer.inline(f"crossing at {crossing.at}", crossing.element)
-            row = rf"\item ${text} = 0$: {AT.get(crossing.at, tex_text(crossing.at))}"
-            if crossing.frequency_squared is not None:
-                frequency = printer.ratio("frequency at a crossing", crossing.frequency_squared)
-                row += rf", at the frequency $\omega^{{2}} = {frequency}$"
-            rows.append(row + ".")
-        parts.append(
-            "The boundary of stability is reached where one of these vanishes:\n"
-            "\\begin{itemize}\n" + "\n".join(rows) + "\n\\end{itemize}"
-        )
-    if dropped:
-        rows = [f"\\item {tex_text(c.name)}: {tex_text(c.status)}; {tex_text(c.because)}." for c in dropped]
-        parts.append(
-            "Conditions that need no attention:\n\\begin{itemize}\n" + "\n".join(rows) + "\n\\end{itemize}"
-        )
-    parts += [tex_text(_sentence(note)) for note in finding.notes]
-    return "\n\n".join(parts)
-
-
-def _condition(condition: Condition, printer: Printer) -> str:
-    stated = printer.condition(f"condition: {condition.name}", condition.element, condition.relation)
-    return stated.formula.display("equation")
-
-
 def assumptions(derivation: Derivation, printer: Printer) -> str:
     """What the entries were divided by, what lies under roots and logarithms, what is undecided."""
     parts = []
@@ -196,9 +139,3 @@ def assumptions(derivation: Derivation, printer: Printer) -> str:
         "leading coefficients may vanish and further factors may become common."
     )
     return "\n\n".join(parts)
-
-
-def _sentence(text: str) -> str:
-    text = text.strip()
-    text = text[:1].upper() + text[1:]
-    return text if text.endswith((".", "!", "?")) else f"{text}."

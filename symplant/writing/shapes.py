@@ -146,16 +146,20 @@ class _Trees:
         self.known: dict[tuple[int, int], Node] = {}
         kinds = {function.key: function.kind for function in ring.functions}
         self.ranks = [self._rank(kinds.get(key, "letter"), i) for i, key in enumerate(ring.keys)]
+        self.plain = not ring.functions  # then the order of printing is that of the ring
 
-    def _rank(self, kind: str, place: int) -> int:
+    def _rank(self, kind: str, place: int) -> float:
         """Where a generator stands in a term: constants, letters, (brackets are 3,) functions, variable."""
         if place == self.variable:
-            return 5
+            return 6
         if kind == "constant":
             return 0
         if kind == "letter":
             return 2
-        return 4 if names_in(self.ring.meanings[place]) else 1
+        if not names_in(self.ring.meanings[place]):
+            return 1
+        # Roots and exponentials before the functions with a name, which need no brackets at the end.
+        return 4 if kind in ("sqrt", "exp") else 5
 
     def sum(self, shape: Shape) -> Node:
         terms = [self.summand(summand) for summand in shape]
@@ -165,13 +169,10 @@ class _Trees:
 
     def summand(self, summand: Summand) -> Node:
         value, powers, brackets, variable_first = summand
-        factors: list[Node] = []
-        ranked: list[tuple[float, int, int]] = [
-            (self.ranks[place], place, exponent) for place, exponent in powers
-        ]
+        ranked = [(self.ranks[place], place, exponent) for place, exponent in powers]
         if variable_first:
-            ranked = [(2.5 if rank == 5 else rank, place, exponent) for rank, place, exponent in ranked]
-        if brackets or any(rank < 2 for rank, _, _ in ranked) or variable_first:
+            ranked = [(2.5 if rank == 6 else rank, place, exponent) for rank, place, exponent in ranked]
+        if variable_first or not self.plain:
             ranked.sort(key=lambda item: item[0])
         factors = [self.power(place, exponent) for rank, place, exponent in ranked if rank < 3]
         for inside, exponent in brackets:

@@ -14,6 +14,7 @@ from symplant.derivation.stability.finding import (
     StabilityFinding,
     StabilityInterval,
 )
+from symplant.writing.crossing_words import crossing_words
 from symplant.writing.derive_page import add_checks, add_failures, add_head
 from symplant.writing.page import Page
 from symplant.writing.plain import PlainFormulas
@@ -36,12 +37,6 @@ VERDICTS = {
     "marginal": ("MARGINAL: at the boundary of stability for every admissible value", "doubt"),
     "conditional": ("CONDITIONAL: stable for some admissible values, not for others", "doubt"),
     "undecided": ("UNDECIDED over the whole parameter box", "doubt"),
-}
-AT = {
-    "origin": "a root passes through the origin",
-    "imaginary pair": "a pair of roots crosses the imaginary axis",
-    "infinity": "a root passes through infinity",
-    "unit circle": "roots cross the unit circle",
 }
 
 
@@ -113,9 +108,11 @@ class _Writer:
             self._condition(condition)
 
     def _condition(self, condition: Condition) -> None:
-        self.page.add(self.plain.condition(condition.element, condition.relation))
+        stated = self.plain.condition(condition.element, condition.relation)
+        self.page.add(stated)
         for bound in condition.solved:
-            self.page.add(self._bound(bound), "", 6)
+            if self._bound(bound) != stated:
+                self.page.add(self._bound(bound), "", 6)
         detail = (
             condition.name if condition.status == "required" else f"{condition.name}: {condition.because}"
         )
@@ -140,7 +137,7 @@ class _Writer:
 
     def _crossing(self, crossing: Crossing) -> None:
         self.page.add(f"{self.plain.factored('', crossing.element)} = 0")
-        self.page.add(crossing.detail or AT[crossing.at], "quiet", 4)
+        self.page.add(crossing_words(crossing), "quiet", 4)
         if crossing.frequency_squared is not None:
             ratio = crossing.frequency_squared
             name = "ω²" if self.unicode else "omega^2"

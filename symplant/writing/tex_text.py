@@ -11,7 +11,7 @@ from fractions import Fraction
 
 from symplant.writing.numbers import digits_of
 
-__all__ = ["number_latex", "tex_text", "unit_latex"]
+__all__ = ["number_latex", "prose", "tex_text", "unit_latex"]
 
 _SPECIAL = {
     "\\": r"\textbackslash{}",
@@ -90,6 +90,25 @@ def tex_text(text: str) -> str:
     50 \% of k\_1, \textbackslash{}input\{x\}
     """
     return "".join(_character(character) for character in " ".join(text.split()))
+
+
+def prose(text: str) -> str:
+    r"""Our own sentences as LaTeX: powers of a variable are set as formulas, the first letter is large.
+
+    >>> print(prose("coefficient of s^2: always"))
+    Coefficient of $s^{2}$: always.
+    """
+    parts = re.split(r"\b([A-Za-z])\^(\d+)", text.strip())
+    written = tex_text_part(parts[0])
+    for letter, power, rest in zip(parts[1::3], parts[2::3], parts[3::3], strict=True):
+        written += f"${letter}^{{{power}}}$" + tex_text_part(rest)
+    written = written[:1].upper() + written[1:]
+    return written if written.endswith((".", "!", "?")) else f"{written}."
+
+
+def tex_text_part(text: str) -> str:
+    """Part of a running text: as `tex_text`, with the spaces at its ends kept."""
+    return "".join(_character(character) for character in text)
 
 
 def _character(character: str) -> str:

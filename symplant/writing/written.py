@@ -12,6 +12,7 @@ from symplant.algebra.expression import Call, Name, Node, Number, Power, Product
 __all__ = ["Level", "TreeWriter", "Written"]
 
 
+_NUMBERS = ("number", "figures", "fraction")
 _PLAIN = ("name", "number", "constant")
 
 
@@ -29,7 +30,8 @@ class Written(NamedTuple):
     """The text of a tree, its width, and what its neighbours must know of it.
 
     A minus sign in front is not part of `text`: `negative` says that there is one.  `kind` tells the
-    neighbours in a product what stands there: "number", "fraction" (of numbers), "constant", "name",
+    neighbours in a product what stands there: "number", "figures" (a number in groups of digits),
+    "fraction" (of numbers), "constant", "name",
     "word" (an upright name of several letters), "bare" (a function whose argument has no brackets),
     "function" (one whose argument has), "call" (a bracket that could be taken for an argument) or
     "value".  `closed` is the text and width to use where a bare function cannot stand.  `factors` are
@@ -128,7 +130,7 @@ class TreeWriter(ABC):
                     factor = self.in_product(factor)
                 if factor.kind == "name":
                     others.append(factor)
-                elif factor.kind in ("number", "fraction"):
+                elif factor.kind in _NUMBERS:
                     numbers.append(factor)
                 else:
                     (constants if factor.kind == "constant" else others).append(factor)
