@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from fractions import Fraction
 
-__all__ = ["Digits", "digits_of", "grouped"]
+__all__ = ["Digits", "digits_of", "grouped", "number_text"]
 
 #: A decimal with more significant digits than these is written as a fraction.
 MOST_DIGITS = 12
@@ -84,3 +84,18 @@ def _pointed(figures: str, before: int) -> str:
     if before == 1 and figures == "1":
         return ""
     return figures if len(figures) <= before else f"{figures[:before]}.{figures[before:]}"
+
+
+def number_text(value: Fraction) -> str:
+    """An exact number as plain text.
+
+    >>> number_text(Fraction(3, 10**12)), number_text(Fraction(-1, 3)), number_text(Fraction(17, 20))
+    ('3e-12', '-1/3', '0.85')
+    """
+    digits = digits_of(abs(value))
+    sign = "-" if value < 0 else ""
+    if digits.below:
+        return f"{sign}{digits.mantissa}/{digits.below}"
+    if digits.power:
+        return f"{sign}{digits.mantissa or '1'}e{digits.power}"
+    return sign + digits.mantissa
