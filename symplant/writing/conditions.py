@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from symplant.algebra.box import Sign
-from symplant.algebra.expression import Node
+from symplant.algebra.expression import Node, integer
 from symplant.algebra.factors import factors
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign, pattern_sign
@@ -81,7 +81,10 @@ def statement(
     itself.
     """
     ring = trees.ring
-    core = _clearest(ring, _without_signed_factors(ring, ring.reduce(element), relation))
+    core, count = _without_signed_factors(ring, ring.reduce(element), relation)
+    if count > 1:
+        return Statement(trees.factored(core), relation, integer(0), (core, ring.one))
+    core = _clearest(ring, core)
     letter = isolate or _letter_in_question(ring, core)
     if letter is not None:
         parts = ring.coefficients(core, letter)
@@ -99,10 +102,14 @@ def statement(
     return _compared(trees, core, ring.zero, relation)
 
 
-def _without_signed_factors(ring: Ring, element: Element, relation: str) -> Element:
-    """The element over all its factors that are positive (nonzero for = and !=) over the box."""
+def _without_signed_factors(ring: Ring, element: Element, relation: str) -> tuple[Element, int]:
+    """The element over all its factors that are positive (nonzero for = and !=) over the box.
+
+    With it, how many different factors are left.
+    """
     if not element:
-        return element
+        return element, 0
+    count = 0
     content, found = factors(element)
     kept = ring.constant(1 if content > 0 or relation in ("=", "!=") else -1)
     for factor, exponent in found:
@@ -110,10 +117,10 @@ def _without_signed_factors(ring: Ring, element: Element, relation: str) -> Elem
         if sign is Sign.NEGATIVE and relation not in ("=", "!="):
             kept = -kept
         elif not (sign is Sign.POSITIVE or (relation in ("=", "!=") and sign.is_nonzero)):
-            kept = kept * factor**exponent
+            kept, count = kept * factor**exponent, count + 1
     if kept.is_constant():  # true or false everywhere: what is said to be positive must still be seen
-        return element // ring.constant(abs(content))
-    return kept
+        return element // ring.constant(abs(content)), 0
+    return kept, count
 
 
 def _clearest(ring: Ring, element: Element) -> Element:

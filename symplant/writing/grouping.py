@@ -146,7 +146,7 @@ class ShapeFinder:
         return tuple(parts)
 
     def drawn(self, element: Element) -> Shape:
-        """By falling powers of the variable; what all terms share stands in front unless that is much longer."""
+        """By falling powers of the variable; what all terms share in front unless that is much longer."""
         whole = self.polynomial(element)
         if len(element) < 2:
             return whole
