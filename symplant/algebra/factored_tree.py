@@ -19,8 +19,8 @@ def factored_tree(ring: Ring, element: Element) -> Node:
     >>> from symplant.algebra.text import node_text
     >>> ring = Ring("s", ("a", "b"))
     >>> a, b = ring.gen("a"), ring.gen("b")
-    >>> node_text(factored_tree(ring, -2 * a * (a - b) ** 2))
-    '-2*a*(a - b)**2'
+    >>> node_text(factored_tree(ring, -2 * a * (a + b) ** 2))
+    '-2*a*(a + b)**2'
     """
     if not element or len(element) > FACTOR_LIMIT:
         return tree_of(ring, element)

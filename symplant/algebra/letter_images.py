@@ -10,13 +10,12 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
-from symplant.algebra.box import Sign
-from symplant.algebra.expression import Call, names_in, walk
+from symplant.algebra.adjoined_root import ring_with_root
+from symplant.algebra.expression import names_in, walk
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Generator, Ring
 from symplant.algebra.sign_pattern import factored_sign
-from symplant.algebra.trees import tree_of
 
 __all__ = ["LetterImage", "replaceable", "replaced", "solve_for_letter"]
 
@@ -122,7 +121,7 @@ def _solved(ring: Ring, condition: Element, without: str) -> LetterImage | None:
         return LetterImage(ring, ring, condition, {key: value}, leading)
     c, b, a = coefficients
     discriminant = ring.reduce(b * b - 4 * a * c)
-    target, root = _with_root(ring, discriminant)
+    target, root = ring_with_root(ring, discriminant)
     top = -target.adopt(b, ring) + target.gen(root)
     value = Ratio.of(target, top, target.adopt(2 * a, ring))
     return LetterImage(ring, target, condition, {key: value}, leading, root)
@@ -157,7 +156,7 @@ def _related(ring: Ring) -> set[str]:
 def replaceable(ring: Ring, key: str, without: str = "") -> bool:
     """Whether no generator but `without` depends on this one, and it obeys no relation itself.
 
-    >>> from symplant.algebra.expression import Name
+    >>> from symplant.algebra.expression import Call, Name
     >>> sine = Generator("_sin1", Call("sin", Name("a")))
     >>> ring = Ring("s", ("a", "b"), functions=(sine,))
     >>> [replaceable(ring, key) for key in ("a", "b", "_sin1")]
@@ -209,15 +208,6 @@ def _lowered(ring: Ring, element: Element, smaller: Ring) -> Element:
 
 def _parts(function: Generator) -> Iterator[object]:
     return walk(function.argument) if function.argument is not None else iter(())
-
-
-def _with_root(ring: Ring, square: Element) -> tuple[Ring, str]:
-    key = f"_root{sum(f.key.startswith('_root') for f in ring.functions) + 1}"
-    terms = {tuple(int(e) for e in exponents): int(value) for exponents, value in square.terms()}
-    # The root stands for both signs, so nothing is known of its own.
-    root = Generator(key, Call("sqrt", tree_of(ring, square)), Sign.REAL, (ring.keys, terms), "sqrt")
-    target = Ring(ring.variable, ring.letters, ring.box, (*ring.functions, root), ring.undecidable)
-    return target, key
 
 
 def _angle_images(ring: Ring, condition: Element) -> list[LetterImage]:
