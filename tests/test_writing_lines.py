@@ -83,7 +83,7 @@ STUBBORN = {
         Product((Name("k"), Call("sin", Sum(tuple(Power(Name("al"), n) for n in range(2, 30)))), Name("s"))),
         r"\sin\bigl(",
     ),
-    "root": (Call("sqrt", Sum(tuple(Power(Name("m"), n) for n in range(2, 30)))), r"\bigr)^{\frac{1}{2}}"),
+    "root": (Call("sqrt", Sum(tuple(Power(Name("m"), n) for n in range(2, 30)))), r"\bigr)^{1/2}"),
     "cube of a function": (
         Power(Call("cos", Sum(tuple(Power(Name("al"), n) for n in range(2, 20)))), 3),
         r"\bigr)^{3}",

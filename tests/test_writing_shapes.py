@@ -1,10 +1,12 @@
 """Shapes as an author gives them: against SymPy's own, and by example."""
 
+from fractions import Fraction
+
 import pytest
 import sympy
 
 from symplant.algebra.conversion import Converter
-from symplant.algebra.expression import Call, Name
+from symplant.algebra.expression import Call, Name, Number, Quotient
 from symplant.algebra.functions import build_ring
 from symplant.algebra.ring import Ring
 from symplant.reading.arithmetic import read_arithmetic
@@ -144,6 +146,9 @@ def test_functions_stand_behind_letters_and_before_the_variable():
         product = product * ring.gen(key)
     assert writer.latex(product) == r"-3 \pi k \sqrt{k} \cos(\alpha) s"
     assert writer.latex(ring.gen("_exp1") ** 3 * ring.gen("m")) == "m e^{3 m}"
+    half = build_ring("s", ("m",), {"": Call("exp", Quotient(Name("m"), Number(Fraction(-6))))}).ring
+    writer = FormulaWriter(half, Spelling.of("s", {"m": "m"}))
+    assert [writer.latex(half.gen("_exp1") ** n) for n in (1, 4, 6)] == ["e^{-m/6}", "e^{-2 m/3}", "e^{-m}"]
 
 
 def test_a_sum_over_many_lines_is_flat_and_equal():

@@ -61,8 +61,8 @@ def condition(
     >>> writer = FormulaWriter(ring, Spelling.of("s", {"k": "k", "m": "m"}))
     >>> condition(writer, 2 * ring.gen("k") - 15).latex
     'k > \\frac{15}{2}'
-    >>> condition(writer, ring.gen("k") ** 2 - 3 * ring.gen("m") * ring.gen("k")).latex
-    'k^{2} > 3 k m'
+    >>> condition(writer, ring.gen("k") ** 2 - 3 * ring.gen("m")).latex
+    'k^{2} > 3 m'
     """
     found = statement(writer.trees, element, relation, isolate)
     write = writer.writer.text

@@ -204,7 +204,7 @@ class LatexWriter(TreeWriter):
     def closing(self, function: str, exponent: int, tall: bool) -> tuple[str, float]:
         raised = str(exponent) if exponent != 1 else ""
         if function == "sqrt":
-            raised = rf"\frac{{{exponent}}}{{2}}"
+            raised = f"{exponent}/2"
         bracket, space = (r"\biggr)", 0.736) if tall else (r"\bigr)", 0.458)
         return (bracket + f"^{{{raised}}}", space + width(raised)) if raised else (bracket, space)
 

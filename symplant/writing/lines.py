@@ -126,15 +126,18 @@ class _Setter:
                 loose = False
                 continue
             sign = self.writer.times if i else ("", 0.0)
-            # Behind letters alone a bracket is opened; behind another bracket it may move to the next line.
-            holds = _bracket_in(factor) and not any(map(_bracket_in, factors[:i]))
-            if sign[1] + factor.width <= self.room(level) and not holds:
+            # Behind letters alone a bracket is opened; behind another bracket it moves to the next line.
+            opens = _bracket_in(factor) and not any(map(_bracket_in, factors[:i]))
+            if not opens and sign[1] + factor.width <= self.room(level):
                 self.fresh(level)
                 self.put(sign[0] + factor.text, sign[1] + factor.width)
                 loose = False
                 continue
-            if i:
-                self.put(*(self.writer.loose if _bracket_in(factor) else self.writer.times))
+            if loose:
+                self.fresh(level)
+                self.put(*sign)
+            elif i:
+                self.put(*(self.writer.times if _holds_no_sum(factor) else self.writer.loose))
             behind = sum(f.width + self.writer.loose[1] for f in factors[i + 1 :]) + tail
             behind = behind if behind < self.room(level) / 3 else 0.0
             self._break(factor, level, behind, alone=len(factors) == 1)
@@ -192,6 +195,14 @@ def _bracket_in(factor: Written) -> bool:
     """Whether a factor is a sum in brackets, or a power of one."""
     node = factor.node.base if isinstance(factor.node, Power) else factor.node
     return isinstance(node, Sum)
+
+
+def _holds_no_sum(factor: Written) -> bool:
+    """Whether a factor, broken, begins with a bracket that need hold no sign: it could be an argument."""
+    node = factor.node.base if isinstance(factor.node, Power) else factor.node
+    if isinstance(node, Call) and node.function == "sqrt":
+        node = node.argument
+    return isinstance(node, Product | Quotient) and node is not factor.node
 
 
 def _bare(written: Written) -> Written:

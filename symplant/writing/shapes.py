@@ -209,6 +209,10 @@ def _times(node: Node, factor: int) -> Node:
             return Number(value * factor)
         case Product(factors=(Number(value=value), *rest)):
             return Product((Number(value * factor), *rest))
+        case Quotient(numerator=top, denominator=Number(value=value)) if value.denominator == 1:
+            shared = gcd(factor, value.numerator)
+            above, below = _times(top, factor // shared), value / shared
+            return above if below == 1 else Quotient(above, Number(below))
         case Quotient(numerator=top, denominator=bottom):
             return Quotient(_times(top, factor), bottom)
     return Product((integer(factor), node))
