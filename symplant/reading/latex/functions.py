@@ -1,4 +1,4 @@
-r"""Functions and their arguments: `\sin(x)`, `\sin^2 x`, `\ln 2x`; where an argument ends must be plain."""
+r"""Functions and their arguments: `\sin(x)`, `\sin^2 x`, `\sin 2x`; where an argument ends must be plain."""
 
 from __future__ import annotations
 
@@ -15,6 +15,9 @@ from symplant.reading.latex.scope import Operand, Scope
 from symplant.reading.latex.tokens import Token, refusal
 
 __all__ = ["function_at", "read_function"]
+
+#: Functions of whose bare argument a number may be a part: sin 2x is one thing, ln 2 x is two.
+_OF_ANGLES = frozenset(("sin", "cos", "tan", "sinh", "cosh", "tanh"))
 
 
 def function_at(cursor: Cursor, scope: Scope) -> str | None:
@@ -66,7 +69,10 @@ def _scripts(cursor: Cursor, scope: Scope, column: int, name: str) -> tuple[Frac
     base: Number | None = None
     while (mark := cursor.text()) in ("^", "_"):
         sign = cursor.take()
+        bare = cursor.text()
         items, end = take_script(cursor, sign)
+        if len(bare) > 1 and bare.isdecimal():  # of \log_23 TeX makes the logarithm of 3 to the base 2
+            raise refusal(sign.column, f"'{bare}' without braces at '{name}'", f"write {{{bare}}}")
         if mark == "^" and exponent is None:
             exponent = read_exponent(items, column, sign.column, end, scope)
             if exponent < 1 or exponent.denominator != 1:
@@ -105,7 +111,7 @@ def _argument(
             shown = scope.quote(column, cursor.column())
             raise refusal(operand.column, f"the exponent in {shown} reads two ways", "use brackets")
         factors.append(operand)
-        if operand.kind != "number":
+        if operand.kind != "number" or name not in _OF_ANGLES:
             break
     if not factors:
         raise refusal(cursor.column(), f"the argument of '{name}' is missing", "put it in brackets")

@@ -8,7 +8,7 @@ from fractions import Fraction
 from symplant.algebra.expression import Number
 from symplant.reading.latex.engine import assembled
 from symplant.reading.latex.functions import function_at, read_function
-from symplant.reading.latex.groups import Cursor, Group, Item
+from symplant.reading.latex.groups import Cursor, Group, Item, is_sign, split, text_of
 from symplant.reading.latex.letters import LETTER_COMMANDS
 from symplant.reading.latex.lookup import read_name
 from symplant.reading.latex.names import starts_name, take_script
@@ -16,6 +16,7 @@ from symplant.reading.latex.powers import powered, read_exponent
 from symplant.reading.latex.scope import Operand, Scope, refuse_zero, unexpected
 from symplant.reading.latex.tables import cells, determinant
 from symplant.reading.latex.tokens import Token, refusal
+from symplant.reading.suggestions import quoted
 from symplant.reading.tokens import MAX_DIGITS
 
 __all__ = ["DIVISION", "MULTIPLICATION", "read_operand"]
@@ -25,6 +26,7 @@ DIVISION = ("/", r"\div", ":")
 
 _OPERATORS = frozenset((*MULTIPLICATION, *DIVISION, "+", "-", r"\frac", r"\over"))
 _ROUND_A_MATRIX = ("(", "[", r"\{", "{")
+_SCALED_IDENTITIES = (("s", "I"), ("z", "I"), ("s", "E"), ("z", "E"))
 _LARGEST_POWER_OF_TEN = 308
 
 
@@ -57,7 +59,9 @@ def read_operand(cursor: Cursor, scope: Scope) -> Operand:
     following = cursor.peek()
     if isinstance(following, Token) and following.text in ("^", "_", "'", "!"):
         before = scope.quote(item.column, following.column)
-        raise refusal(following.column, f"'{following.text}' after {before} is not read", "use brackets")
+        raise refusal(
+            following.column, f"{quoted(following.text)} after {before} is not read", "use brackets"
+        )
     return operand
 
 
@@ -88,7 +92,8 @@ def _group(cursor: Cursor, scope: Scope, group: Group) -> Operand:
             r"for scalar letters write \frac{1}{...}",
         )
     if group.kind == "{":
-        return Operand("value", node, False, group.column)
+        whole = len(group.items) == 3 and _is_whole(group.items[0]) and _is_whole(group.items[2])
+        return Operand("fraction" if whole else "value", node, False, group.column)
     kind = "value" if _has_operator(group.items) else "call"
     return _raised(cursor, scope, Operand(kind, node, False, group.column))
 
@@ -100,16 +105,10 @@ def _has_operator(items: Sequence[Item]) -> bool:
 
 
 def _is_resolvent(items: Sequence[Item]) -> bool:
-    r"""Whether the items are like `s I - A` or `s E - A`, which everyone in this trade reads as matrices."""
-    texts = [item.text if isinstance(item, Token) else "" for item in items]
-    return (
-        len(texts) >= 4
-        and texts[0] in ("s", "z")
-        and texts[1] in ("I", "E")
-        and texts[2] == "-"
-        and texts[3].isupper()
-        and (len(texts) == 4 or texts[4] == "_")
-    )
+    r"""Whether a sum has the term `s I` or `s E`: everyone in this trade reads it as a sum of matrices."""
+    terms, signs = split(items, is_sign)
+    products = [tuple(map(text_of, term)) for term in terms]
+    return bool(signs) and any(product in _SCALED_IDENTITIES for product in products)
 
 
 def _number(cursor: Cursor, scope: Scope) -> Operand:

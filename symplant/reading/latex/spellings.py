@@ -54,9 +54,8 @@ class Spellings:
         """What may have been meant by an undeclared normal form, as a suggestion."""
         # Braces and typefaces are left out, or all letters with an index would be close to each other.
         bare = {_bare(known): known for known in self._names}
-        near = (
-            [_bare(key)] if _bare(key) in bare else get_close_matches(_bare(key)[:_LONGEST_COMPARED], bare, 2)
-        )
+        near = get_close_matches(_bare(key)[:_LONGEST_COMPARED], [one for one in bare if len(one) > 1], 2)
+        near = [_bare(key)] if _bare(key) in bare else near
         offer = did_you_mean(key, (), *(self._written[bare[one]] for one in near))
         few = 0 < len(self._names) <= _MOST_LISTED
         return offer or (f"declared are {listed(self._written.values(), 'and')}" if few else "")

@@ -81,7 +81,7 @@ _TYPED = {
 _SPACING = "|".join(
     words(
         "quad qquad enspace enskip thinspace medspace thickspace negthinspace",
-        "displaystyle textstyle scriptstyle limits nolimits allowbreak nobreak",
+        "displaystyle textstyle scriptstyle allowbreak nobreak",
     )
 )
 
