@@ -75,7 +75,7 @@ def _value(value: Any) -> str:
     ball = _BALL.fullmatch(text)
     if ball is not None:
         middle, radius = (_scientific(part) for part in ball.groups())
-        return rf"${middle} \pm {radius}$"
+        return rf"${middle}$ $\pm {radius}$"
     if text.lstrip("-").isdigit() or "/" in text:
         sign, digits = ("$-$", text[1:]) if text.startswith("-") else ("", text)
         parts = []
