@@ -22,7 +22,7 @@ __all__ = ["has_bounds", "positive_by_bounds"]
 #: Largest number of coefficients that one substitution may have.
 LARGEST = 20_000
 #: Most boxes looked at.
-BOXES = 400
+BOXES = 200
 
 
 @dataclass(frozen=True)

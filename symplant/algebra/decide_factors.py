@@ -7,6 +7,9 @@ from dataclasses import dataclass
 
 from symplant.algebra.box import Sign
 from symplant.algebra.decide_bounds import has_bounds, positive_by_bounds
+from symplant.algebra.decide_search import letters_in
+from symplant.algebra.enclosure import certified_sign
+from symplant.algebra.points import points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import pattern_sign
 
@@ -91,9 +94,12 @@ def _factored(ring: Ring, element: Element) -> tuple[int, list[tuple[Element, in
 def _sign_by_ranges(ring: Ring, factor: Element) -> Sign:
     if len(factor) > LARGEST_BOUNDED or not any(has_bounds(ring, key) for key in ring.used([factor])):
         return Sign.REAL
-    if positive_by_bounds(ring, factor, PARTS):
-        return Sign.POSITIVE
-    return Sign.NEGATIVE if positive_by_bounds(ring, -factor, PARTS) else Sign.REAL
+    # One value tells which sign is worth a proof.
+    letters = letters_in(ring, [factor])
+    direction = certified_sign(ring, factor, next(points(ring.box, letters, {}, 1)))
+    if not direction or not positive_by_bounds(ring, direction * factor, PARTS):
+        return Sign.REAL
+    return Sign.POSITIVE if direction > 0 else Sign.NEGATIVE
 
 
 def _listed(factor: Element, nonzero: Sequence[Element]) -> bool:

@@ -24,7 +24,7 @@ __all__ = ["PointVerdict", "classify", "counts_at", "find_point"]
 
 #: "axis": no root beyond the boundary, but some on it.
 PointVerdict: TypeAlias = Literal["stable", "unstable", "axis"]
-SAMPLE, LINES = 3000, 24
+SAMPLE, LINES = 1500, 16
 
 
 def counts_at(subject: Subject, point: Mapping[str, Fraction]) -> RootCounts | None:
@@ -68,7 +68,8 @@ def _bilinear(values: Sequence[Fraction]) -> list[Fraction]:
 
 def classify(subject: Subject, point: Mapping[str, Fraction]) -> PointVerdict | None:
     """What holds at a point, None where it could not be certified (or something is not defined)."""
-    if not respects(subject.ring, subject.nonzero, point):
+    # Where the content vanishes there is no polynomial to judge.
+    if not respects(subject.ring, [*subject.nonzero, subject.content], point):
         return None
     if subject.functions:
         return _by_balls(subject, point)
@@ -146,7 +147,7 @@ def _suggested(
             continue
         signs = table.signs(part)
         for point, row in zip(part, signs, strict=True):
-            if not len(row) or ((row > 0).all() if stable else (row < 0).any()):
+            if not len(row) or ((row > 0).all() if stable else (row <= 0).any()):
                 yield point
     if not subject.functions:
         yield from _on_lines(subject, sample[:: max(1, len(sample) // LINES)])
