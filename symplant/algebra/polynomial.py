@@ -5,10 +5,15 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from random import Random
 
+from symplant.algebra.modular_point import random_point
 from symplant.algebra.ring import Element, Ring
 
 __all__ = ["Polynomial"]
+
+#: Points tried until one keeps the degrees; nearly every point does.
+_POINTS = 8
 
 
 @dataclass(frozen=True)
@@ -80,7 +85,7 @@ class Polynomial:
         if other.is_zero:
             return self.primitive()._positive()
         if self.ring.has_relations:
-            return _euclid(self, other)
+            return _quotient_gcd(self.primitive(), other.primitive())
         return Polynomial(self.ring, self.element.gcd(other.element)).primitive()._positive()
 
     def factors(self) -> tuple[int, list[tuple[Element, int]]]:
@@ -109,6 +114,46 @@ def content(ring: Ring, elements: Sequence[Element]) -> Element:
     return result
 
 
+def _quotient_gcd(first: Polynomial, second: Polynomial) -> Polynomial:
+    """Greatest common divisor of primitive polynomials in a ring with relations (a domain).
+
+    The coefficients of a remainder sequence grow beyond all bounds there.  Nearly always it is not
+    needed: the divisor that the polynomial ring knows is one, and modulo a prime there is no larger.
+    """
+    ring = first.ring
+    bound = _degree_bound(first, second)
+    if bound == 0:
+        return Polynomial.constant(ring, 1)
+    common = Polynomial(ring, first.element.gcd(second.element)).primitive()
+    if common.degree < bound:
+        parts = (Polynomial(ring, whole.element // common.element) for whole in (first, second))
+        common = Polynomial.of(ring, common.element * _euclid(*parts).element).primitive()
+    return _rationalised(common)._positive()
+
+
+def _degree_bound(first: Polynomial, second: Polynomial) -> int:
+    """A degree that the greatest common divisor cannot exceed: its degree at a point modulo a prime.
+
+    A principal subresultant coefficient that is not zero at the point is not zero in the ring, and the
+    first one that is not zero tells the degree (J. von zur Gathen, J. Gerhard, Modern Computer Algebra,
+    2nd ed. 2003, ch. 6; from memory).
+    """
+    least = min(first.degree, second.degree)
+    if least == 0:
+        return 0
+    # A fixed seed: the same input takes the same steps in every run.
+    random = Random(0)
+    for _ in range(_POINTS):
+        try:
+            point = random_point(first.ring, random)
+        except ArithmeticError:
+            break
+        one, other = point.image(first.element), point.image(second.element)
+        if one.degree() == first.degree and other.degree() == second.degree:
+            return int(one.gcd(other).degree())
+    return least
+
+
 def _euclid(first: Polynomial, second: Polynomial) -> Polynomial:
     """Primitive remainder sequence in the quotient ring (a domain), every step in normal form."""
     ring = first.ring
@@ -119,7 +164,7 @@ def _euclid(first: Polynomial, second: Polynomial) -> Polynomial:
         if low.degree == 0:
             return Polynomial.constant(ring, 1)
         high, low = low, _pseudo_remainder(high, low).primitive()
-    return _rationalised(high)._positive()
+    return high
 
 
 def _pseudo_remainder(high: Polynomial, low: Polynomial) -> Polynomial:
