@@ -514,6 +514,21 @@ def test_conditions_that_exclude_each_other() -> None:
     assert {i.verdict for i in single.intervals} == {"unstable"}
 
 
+def test_two_letters_are_decided_by_cells_of_the_plane() -> None:
+    # Each condition can hold, no two exclude each other by their terms, all three together never hold.
+    ring, (s, a, b) = _ring("s", real="a b")
+    finding = _study(ring, (s + 1 - a**2 - b**2) * (s + a - 2) * (s + b + 5))
+    assert finding.verdict == "unstable" and "plane of a and b" in finding.because
+    # The same with a circle that reaches the half plane, if only just.
+    near = _study(ring, (s + 401 - 100 * a**2 - 100 * b**2) * (s + a - 2) * (s + b + 5))
+    assert near.verdict == "conditional"
+    point = near.witnesses["stable"]
+    assert point is not None and point["a"] > 2 and 100 * point["a"] ** 2 + 100 * point["b"] ** 2 < 401
+    # A letter with a single value leaves no open cell; then nothing is claimed from cells.
+    ring, (s, a, b) = _ring("s", real="a", b=Interval(Fraction(3), Fraction(3)))
+    assert _study(ring, (s + a) * (s + b - 2)).verdict == "conditional"
+
+
 def test_a_closed_end_is_not_forgotten() -> None:
     # At mu = 0 the second condition holds and the first fails: it is not implied.
     ring, (s, u) = _ring("s", u=Interval(Fraction(0), Fraction(1, 2)))

@@ -102,7 +102,7 @@ def _follows(subject: Subject, target: Element, others: Sequence[Settled]) -> st
             if len(first.element) * len(second.element) > LARGEST:
                 continue
             product = ring.reduce(first.element * second.element)
-            if product and radical(ring, product, subject.nonzero).element == target:
+            if product and not product % target and radical(ring, product, subject.nonzero).element == target:
                 return (
                     f"is the product of {element_text(ring, first.element)} and "
                     f"{element_text(ring, second.element)}"

@@ -9,6 +9,7 @@ from symplant.algebra.verdict import Verdict
 from symplant.derivation.stability.boundary import axis_verdict, semisimple, symmetric_sentence
 from symplant.derivation.stability.finding import Point, StabilityInterval, StabilityVerdict
 from symplant.derivation.stability.implication import contradiction
+from symplant.derivation.stability.planes import stable_cell
 from symplant.derivation.stability.settling import Settled
 from symplant.derivation.stability.subject import Subject
 from symplant.derivation.stability.witnesses import find_point
@@ -54,6 +55,12 @@ def judge(
     stage("witnesses")
     elements = [c.element for c in ordinary if c.open]
     stable = find_point(subject, elements, {"stable"})
+    if stable is None:
+        stable, complete = stable_cell(subject)
+        if complete and stable is None:
+            one, two = subject.letters
+            reason = f"none of the cells into which the boundary cuts the plane of {one} and {two} is stable"
+            return _never_stable(subject, ordinary, marginal, stage, reason)
     unstable = find_point(subject, elements, {"unstable"}) or find_point(subject, elements, {"axis"})
     found = {"stable": stable, "unstable": unstable}
     if stable is not None and unstable is not None:

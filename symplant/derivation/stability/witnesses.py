@@ -20,7 +20,7 @@ from symplant.algebra.routh import RootCounts, root_counts
 from symplant.algebra.substitution import substituted
 from symplant.derivation.stability.subject import Subject
 
-__all__ = ["PointVerdict", "classify", "counts_at", "find_point"]
+__all__ = ["PointVerdict", "classify", "counts_at", "edges_of", "find_point"]
 
 #: "axis": no root beyond the boundary, but some on it.
 PointVerdict: TypeAlias = Literal["stable", "unstable", "axis"]
@@ -162,14 +162,14 @@ def _on_lines(subject: Subject, bases: Sequence[dict[str, Fraction]]) -> Iterato
             edges: list[Element] = []
             for part in subject.parts:
                 (element,) = substituted(ring, [part.image.element], others)
-                edges += _edges(Polynomial.of(ring, element))
+                edges += edges_of(Polynomial.of(ring, element))
             edges = [edge for edge in edges if edge]
             found, _ = cells(ring, edges, letter, ring.box.intervals.get(letter, Interval()))
             for cell in found:
                 yield {**base, letter: cell.sample}
 
 
-def _edges(polynomial: Polynomial) -> list[Element]:
+def edges_of(polynomial: Polynomial) -> list[Element]:
     """Elements whose zeros part the line into pieces with one count of roots."""
     if polynomial.degree < 1:
         return list(polynomial.coefficients)
