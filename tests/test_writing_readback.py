@@ -89,14 +89,15 @@ def test_an_element_reads_back_as_sum_and_as_product(element):
     assert same_value(read(WRITER.factored_latex(element)), meant)
 
 
-@given(elements(), st.sampled_from([6.0, 9.0, 14.0, 20.0]))
+@given(elements(), st.sampled_from([4.0, 6.0, 9.0, 14.0, 20.0]))
 @settings(max_examples=60, deadline=None)
 def test_broken_lines_read_back(element, room):
     formula = FormulaWriter(RING, SPELLING, room).polynomial("", element)
     assert same_value(read(formula.body), tree_of(RING, element))
+    assert formula.width <= max(room, 14.0)  # below that, a function of one angle may be too wide
 
 
-@given(elements(largest=3), elements(largest=3), st.sampled_from([8.0, 14.0, 40.0]))
+@given(elements(largest=3), elements(largest=3), st.sampled_from([6.0, 8.0, 11.0, 14.0, 40.0]))
 @settings(max_examples=40, deadline=None)
 def test_a_quotient_reads_back_as_fraction_and_in_lines(top, bottom, room):
     assume(bottom)
@@ -104,6 +105,7 @@ def test_a_quotient_reads_back_as_fraction_and_in_lines(top, bottom, room):
     meant = Quotient(tree_of(RING, top), tree_of(RING, bottom))
     assert same_value(read(formula.body), meant)
     assert same_value(read(formula.whole), meant)
+    assert formula.width <= max(room, 14.0)
 
 
 @given(elements(), st.sampled_from([">", ">=", "<", "<=", "=", "!="]))

@@ -114,10 +114,11 @@ def set_formula(
     \end{align*}
     """
     left = width(lhs) + RELATION if lhs else 0.0
-    lines = broken(writer, node, room - left)
+    written = writer.write(node)
+    lines = broken(writer, written, room - left)
     alone = len(lines) > 1 and left > WIDE_LEFT * room
     if alone:
-        lines, left = broken(writer, node, room - 1.0, room - 1.0 - RELATION), 1.0
+        lines, left = broken(writer, written, room - 1.0, room - 1.0 - RELATION), 1.0
         lines = (lines[0]._replace(width=lines[0].width + RELATION), *lines[1:])
     widest = max(left + line.indent + line.width for line in lines)
     return Formula(
@@ -126,7 +127,7 @@ def set_formula(
         element,
         ring,
         divisor,
-        writer.text(node),
+        writer.signed(written)[0],
         tuple(line.indent for line in lines),
         max(widest, width(lhs)),
         relation,

@@ -29,6 +29,8 @@ __all__ = ["ShapeFinder"]
 
 #: Sums with more terms than these are grouped, factored (within others), or collected no more: it is slow.
 MOST_GROUPED, MOST_FACTORED, MOST_FACTORED_WITHIN, MOST_COLLECTED = 3000, 1500, 24, 40
+#: Polynomials with more terms than these are written expanded, which is a matter of pages anyway.
+MOST_SHAPED = 6000
 #: Sums with more terms than these are not tried with sines in place of cosines.
 MOST_SWAPPED = 200
 #: Sums with more terms than these fill many lines in any shape: only flat ones are tried.
@@ -138,7 +140,8 @@ class ShapeFinder:
         for power, coefficient in reversed(list(enumerate(self.ring.coefficients(element)))):
             if not coefficient:
                 continue
-            shape = self.fitting(coefficient)
+            large = len(element) > MOST_SHAPED
+            shape = led(self.expanded(self.ring.terms(coefficient))) if large else self.fitting(coefficient)
             if power:
                 sign, inside = steady(shape)
                 shape = (self._times(sign, ((place, power),), inside),)

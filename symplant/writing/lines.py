@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import NamedTuple
 
-from symplant.algebra.expression import Call, Node, Power, Product, Quotient, Sum
+from symplant.algebra.expression import Call, Name, Node, Number, Power, Product, Quotient, Sum
 from symplant.writing.written import Level, TreeWriter, Written
 
 __all__ = ["Line", "broken"]
@@ -27,9 +27,9 @@ class Line(NamedTuple):
 
 
 def broken(
-    writer: TreeWriter, node: Node, room: float, first: float | None = None, step: float = 1.0
+    writer: TreeWriter, tree: Node | Written, room: float, first: float | None = None, step: float = 1.0
 ) -> tuple[Line, ...]:
-    r"""The lines of a tree.
+    r"""The lines of a tree, which may be written already.
 
     `room` is the width of a line in the writer's unit, of which a continuation line loses `step` for
     each step of indentation; `first` is what the first line has (default: all of it).
@@ -42,7 +42,7 @@ def broken(
     >>> [line.text for line in broken(writer, tree, 3.5)]
     ['a + b', '+ c']
     """
-    written = writer.write(node)
+    written = tree if isinstance(tree, Written) else writer.write(tree)
     setter = _Setter(writer, room, room if first is None else first, step)
     if writer.signed(written)[1] <= setter.room():
         setter.put(*writer.signed(written))
@@ -133,7 +133,7 @@ class _Setter:
                 self.put(sign[0] + factor.text, sign[1] + factor.width)
                 loose = False
                 continue
-            if loose:
+            if loose or isinstance(_base(factor), Name | Number):
                 self.fresh(level)
                 self.put(*sign)
             elif i:
@@ -152,7 +152,7 @@ class _Setter:
         if isinstance(node, Call):
             self._bracketed(node.function, self.writer.write(node.argument), exponent, level, tail)
         elif isinstance(node, Sum) or (raised and isinstance(node, Product | Quotient)):
-            self._bracketed("", self.writer.write(node), exponent, level, tail)
+            self._bracketed("", factor.inside or self.writer.write(node), exponent, level, tail)
         elif isinstance(node, Quotient):
             self._quotient(node, level, tail, alone)
         else:
@@ -191,18 +191,22 @@ class _Setter:
         self.put(*closing)
 
 
+def _base(factor: Written) -> Node:
+    """The tree of a factor, or of what it is a power of."""
+    return factor.node.base if isinstance(factor.node, Power) else factor.node
+
+
 def _bracket_in(factor: Written) -> bool:
     """Whether a factor is a sum in brackets, or a power of one."""
-    node = factor.node.base if isinstance(factor.node, Power) else factor.node
-    return isinstance(node, Sum)
+    return isinstance(_base(factor), Sum)
 
 
 def _holds_no_sum(factor: Written) -> bool:
     """Whether a factor, broken, begins with a bracket that need hold no sign: it could be an argument."""
-    node = factor.node.base if isinstance(factor.node, Power) else factor.node
-    if isinstance(node, Call) and node.function == "sqrt":
-        node = node.argument
-    return isinstance(node, Product | Quotient) and node is not factor.node
+    node = _base(factor)
+    if isinstance(node, Call):
+        return node.function == "sqrt" and not isinstance(node.argument, Sum)
+    return isinstance(factor.node, Power) and not isinstance(node, Sum)
 
 
 def _bare(written: Written) -> Written:

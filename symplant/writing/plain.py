@@ -10,6 +10,7 @@ from symplant.writing.conditions import statement
 from symplant.writing.element_trees import ElementTrees
 from symplant.writing.lines import broken
 from symplant.writing.plain_tree import AsciiWriter, UnicodeWriter, columns, terminal_names
+from symplant.writing.written import Written
 
 __all__ = ["PlainFormulas"]
 
@@ -77,19 +78,20 @@ class PlainFormulas:
         """A tree in lines; those after the first are indented to stand behind the relation."""
         head = f"{lhs} {relation} ".replace("  ", " ") if lhs else ""
         room = self.columns - columns(head)
-        storeys = self._storeys(node, head, room)
+        written = self.writer.write(node)
+        storeys = self._storeys(written, head, room)
         if storeys:
             return storeys
         margin = columns(head)
         if room < self.columns / 2:
             head, margin, room = head.rstrip() + "\n    ", 4, self.columns - 4
-        lines = broken(self.writer, node, float(room), step=2.0)
+        lines = broken(self.writer, written, float(room), step=2.0)
         first = f"{head}{lines[0].text}"
         rest = [" " * (margin + 2 * line.indent) + line.text for line in lines[1:]]
         return "\n".join([first, *rest])
 
-    def _storeys(self, node: Node, head: str, room: int) -> str:
-        written = self.writer.write(node)
+    def _storeys(self, written: Written, head: str, room: int) -> str:
+        """The lines of a fraction that fits in two storeys, "" for anything else."""
         if not isinstance(written.node, Quotient) or written.width < SHORT:
             return ""
         sign = self.writer.sign[0] + " " if written.negative else ""
