@@ -9,6 +9,7 @@ from symplant.algebra.box import Sign
 from symplant.algebra.decide_bounds import has_bounds, positive_by_bounds
 from symplant.algebra.decide_search import letters_in
 from symplant.algebra.enclosure import certified_sign
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.points import points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import pattern_sign
@@ -79,7 +80,7 @@ def radical(ring: Ring, element: Element, nonzero: Sequence[Element] = ()) -> Ra
 
 def _factored(ring: Ring, element: Element) -> tuple[int, list[tuple[Element, int]]]:
     if len(element) <= LARGEST_FACTORED:
-        content, found = element.factor()
+        content, found = irreducible(element)
         return int(content), [(f, int(e)) for f, e in found]
     size: int = abs(int(element.primitive()[0]))
     monomial = element.term_content() // ring.constant(size)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from symplant.algebra.expression import Node, Number, Power, Product, Quotient, negated
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.text import FACTOR_LIMIT
@@ -24,7 +25,7 @@ def factored_tree(ring: Ring, element: Element) -> Node:
     """
     if not element or len(element) > FACTOR_LIMIT:
         return tree_of(ring, element)
-    content, found = element.factor()
+    content, found = irreducible(element)
     value, factors = int(content), []
     for factor, exponent in found:
         if ring.is_led_negative(factor):

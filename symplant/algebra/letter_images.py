@@ -12,6 +12,7 @@ from dataclasses import dataclass
 
 from symplant.algebra.adjoined_root import ring_with_root
 from symplant.algebra.expression import names_in, walk
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Generator, Ring
@@ -53,7 +54,7 @@ class LetterImage:
         result = [target.adopt(element, self.source) for element in elements]
         for key, value in self.values.items():
             result = replaced(target, result, key, value)
-        factors = [factor for factor, _ in self._denominator().factor()[1]]
+        factors = [factor for factor, _ in irreducible(self._denominator())[1]]
         for factor in factors:
             while any(result) and all(not e or not e % factor for e in result):
                 result = [e // factor for e in result]
@@ -136,7 +137,7 @@ def _root_images(ring: Ring, condition: Element, root: str) -> list[LetterImage]
     constant, slope = parts[0], parts[1]
     norm = ring.reduce(constant * constant - slope * slope * ring.reduce(ring.gen(root) ** 2))
     images = []
-    for factor, _ in norm.factor()[1]:
+    for factor, _ in irreducible(norm)[1]:
         solved = None if ring.used([factor]) & _related(ring) else _solved(ring, factor, root)
         if solved is None or solved.root:
             return []

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 from random import Random
 
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.modular_point import random_point
 from symplant.algebra.ring import Element, Ring
 
@@ -95,7 +96,7 @@ class Polynomial:
         """
         if self.is_zero:
             return 0, []
-        content_, found = self.element.factor()
+        content_, found = irreducible(self.element)
         return int(content_), [(factor, int(exponent)) for factor, exponent in found]
 
     def _positive(self) -> Polynomial:

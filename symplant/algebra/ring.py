@@ -195,10 +195,16 @@ class Ring:
         return self.terms(self.coefficients(element)[-1])[0][0] < 0
 
     def used(self, elements: Iterable[Element]) -> set[str]:
-        """Keys of the generators that occur in any of the elements."""
+        """Keys of the generators that occur in any of the elements.
+
+        >>> ring = Ring("s", ("m", "k"))
+        >>> ring.used([ring.gen("m") + 1, ring.zero])
+        {'m'}
+        """
         found: set[int] = set()
         for element in elements:
-            found.update(place for place, degree in enumerate(element.degrees()) if degree)
+            # The degrees of zero are -1.
+            found.update(place for place, degree in enumerate(element.degrees()) if degree > 0)
         return {self.keys[place] for place in found}
 
     def value(self, element: Element, point: Mapping[str, Fraction]) -> Fraction:

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from symplant.algebra.box import Sign
 from symplant.algebra.conversion import RatioKey, ratio_key
 from symplant.algebra.expression import Call, Node, Product
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Generator, Ring
 from symplant.algebra.sign_pattern import factored_sign
@@ -161,7 +162,7 @@ class _Split:
         exponents: dict[str, tuple[Element, int]] = {}
         negative = False
         for part, direction in ((radicand.numerator, 1), (radicand.denominator, -1)):
-            content, factors = part.factor()
+            content, factors = irreducible(part)
             negative ^= int(content) < 0
             for factor, exponent in (*_integer_factors(ring, abs(int(content))), *factors):
                 old = exponents.get(str(factor), (factor, 0))[1]

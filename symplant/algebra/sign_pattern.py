@@ -6,6 +6,7 @@ from functools import reduce
 from operator import mul
 
 from symplant.algebra.box import Sign
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ring import Element, Ring
 
 __all__ = ["factored_sign", "pattern_sign"]
@@ -47,7 +48,7 @@ def factored_sign(ring: Ring, element: Element) -> Sign:
     direct = pattern_sign(ring, element)
     if direct is not Sign.REAL or not element:
         return direct
-    content, factors = element.factor()
+    content, factors = irreducible(element)
     start = Sign.POSITIVE if int(content) > 0 else Sign.NEGATIVE
     return reduce(mul, (pattern_sign(ring, f) ** int(e) for f, e in factors), start)
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from math import isqrt
 
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ring import Element, Ring
 
 __all__ = ["square_part"]
@@ -22,7 +23,7 @@ def square_part(ring: Ring, element: Element) -> tuple[Element, Element]:
     """
     if not element:
         return ring.one, element
-    content, factors = element.factor()
+    content, factors = irreducible(element)
     outer, inner = _integer_square(abs(int(content)))
     front, rest = ring.constant(outer), ring.constant(inner if int(content) > 0 else -inner)
     for factor, exponent in factors:

@@ -6,6 +6,7 @@ from collections.abc import Iterable
 from fractions import Fraction
 
 from symplant.algebra.expression import Call, Name, Node, Number, Power, Product, Quotient, Sum
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring, Term
 
@@ -76,7 +77,7 @@ def factored_text(ring: Ring, element: Element) -> str:
     """
     if len(element) > FACTOR_LIMIT or not element:
         return polynomial_text(ring, element)
-    content, found = element.factor()
+    content, found = irreducible(element)
     value, factors = int(content), []
     for factor, exponent in found:
         if ring.is_led_negative(factor):

@@ -8,6 +8,7 @@ from functools import cached_property
 
 from symplant.algebra.conversion import Converter
 from symplant.algebra.expression import Node
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.functions import Setting, build_ring
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring
@@ -114,7 +115,7 @@ def irreducible_factors(ring: Ring, elements: Iterable[Element]) -> list[Element
         if element.is_constant():
             continue
         factors = sorted(
-            (factor for factor, _ in element.factor()[1]), key=lambda f: ring.terms(f), reverse=True
+            (factor for factor, _ in irreducible(element)[1]), key=lambda f: ring.terms(f), reverse=True
         )
         for factor in factors:
             positive = -factor if ring.is_led_negative(factor) else factor

@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from symplant.algebra.decide_search import letters_in
+from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element
 from symplant.algebra.sign_pattern import factored_sign
@@ -64,7 +65,7 @@ def content_notes(subject: Subject) -> list[str]:
         return []
     open_factors = [
         factor
-        for factor, _ in content.factor()[1]
+        for factor, _ in irreducible(content)[1]
         if not factored_sign(ring, factor).is_nonzero
         and not any(factor in (known, -known) for known in subject.nonzero)
     ]
