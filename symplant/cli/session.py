@@ -66,7 +66,7 @@ class Session:
         return run_supervised(
             job,
             max_seconds=self.max_seconds,
-            max_memory=self.max_memory,
+            max_memory=self.max_memory or _most_memory(),
             on_stop=self._stopped if self.as_json else None,
         )
 
@@ -81,6 +81,19 @@ class Session:
                     answer[key] = value
         answer["stopped"] = {"because": reason, "finished": finished, "unfinished": unfinished}
         return dump(answer)
+
+
+def _most_memory() -> int | None:
+    """Without a budget: most of what is free, in bytes, so that no derivation takes the machine down.
+
+    None where the system does not tell (then its own limits hold).
+    """
+    try:
+        lines = Path("/proc/meminfo").read_text(encoding="ascii").splitlines()
+        free = next(line for line in lines if line.startswith("MemAvailable:"))
+        return int(free.split()[1]) * 1024 * 4 // 5
+    except (OSError, StopIteration, ValueError, IndexError):
+        return None
 
 
 def dump(answer: dict[str, Any]) -> str:

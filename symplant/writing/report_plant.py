@@ -5,6 +5,9 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from symplant.algebra.box import Sign
+from symplant.algebra.expression import integer
+from symplant.writing.display import LINE, set_formula
+from symplant.writing.latex_tree import matrix_latex
 from symplant.writing.tex_text import number_latex, tex_text, unit_latex
 from symplant.writing.width import BRACKETS
 
@@ -14,14 +17,14 @@ if TYPE_CHECKING:
     from symplant.derivation.derive import Derivation
     from symplant.plant.model import Matrix, Model
     from symplant.plant.parameter import Parameter, Signal
-    from symplant.writing.latex_tree import LatexWriter
     from symplant.writing.printing import Printer
     from symplant.writing.spelling import Spelling
 
 __all__ = ["equations", "matrix_displays", "nomenclature", "scope", "vectors"]
 
-#: Width in em of the text, and what a matrix column adds to its entries.
-TEXT, COLUMN_GAP = 32.0, 1.0
+#: What a matrix column adds to the width of its entries, in em.
+COLUMN_GAP = 1.0
+ZERO = integer(0)
 #: Sizes to try for a wide matrix, each with its scale.
 SIZES = (("", 1.0), (r"\small", 0.92), (r"\footnotesize", 0.83), (r"\scriptsize", 0.73))
 
@@ -75,11 +78,10 @@ def matrix_displays(derivation: Derivation, printer: Printer) -> list[str]:
     converter = derivation.pencil.setting.converter()
     displays = []
     for name, matrix in derivation.model.matrices.items():
-        cells = [
-            [printer.entry(f"entries of {name}", entry, converter.convert(entry)) for entry in row]
-            for row in matrix
-        ]
-        displays.append(_matrix(name, matrix, cells, printer.formulas.writer))
+        for row in matrix:
+            for entry in row:
+                printer.entry(f"entries of {name}", entry, converter.convert(entry))
+        displays.append(_matrix(name, matrix, printer))
     return displays
 
 
@@ -95,26 +97,22 @@ def _direct(model: Model, index: str) -> str:
     return rf" + \mathbf{{D}}\,\mathbf{{u}}{index}" if model.D is not None else ""
 
 
-def _matrix(name: str, matrix: Matrix, cells: list[list[str]], writer: LatexWriter) -> str:
+def _matrix(name: str, matrix: Matrix, printer: Printer) -> str:
+    writer = printer.formulas.writer
     columns = [max(writer.write(row[j]).width for row in matrix) for j in range(len(matrix[0]))]
     width = sum(columns) + COLUMN_GAP * len(columns) + 2 * BRACKETS[1] + 2.5
     for size, scale in SIZES:
-        if width * scale <= TEXT:
-            body = " \\\\\n".join(" & ".join(row) for row in cells)
-            stretch = r"\renewcommand{\arraystretch}{1.25}" if r"\frac" in body else ""
-            display = rf"\mathbf{{{name}}} = \begin{{bmatrix}}" + f"\n{body}\n" + r"\end{bmatrix}"
-            return f"{{{size}{stretch}\\[\n{display}\n\\]}}"
+        if width * scale <= LINE:
+            body = matrix_latex(matrix, printer.spelling)
+            return f"{{{size}\\[\n\\mathbf{{{name}}} = {body}\n\\]}}"
     rows = [
-        rf"\mathbf{{{name}}}_{{{i},{j}}} &= {cell}"
-        for i, row in enumerate(cells, 1)
-        for j, cell in enumerate(row, 1)
-        if cell != "0"
+        set_formula(rf"\mathbf{{{name}}}_{{{i},{j}}}", entry, writer).display("equation")
+        for i, row in enumerate(matrix, 1)
+        for j, entry in enumerate(row, 1)
+        if entry != ZERO
     ]
-    body = " \\\\\n".join(rows)
-    return (
-        rf"The matrix $\mathbf{{{name}}}$ is ${len(cells)} \times {len(columns)}$ with the entries"
-        f"\n\\begin{{align*}}\n{body}\n\\end{{align*}}\nand zero elsewhere."
-    )
+    head = rf"The matrix $\mathbf{{{name}}}$ is ${len(matrix)} \times {len(columns)}$ with the entries"
+    return "\n".join([head, *rows, "and zero elsewhere."])
 
 
 def _parameter_row(parameter: Parameter, latex: str) -> str:
