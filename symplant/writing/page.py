@@ -9,7 +9,10 @@ import io
 from collections.abc import Iterable
 from dataclasses import dataclass
 
-__all__ = ["Line", "Page"]
+__all__ = ["GLUE", "Line", "Page"]
+
+#: A space at which rows are not broken.
+GLUE = "\N{NO-BREAK SPACE}"
 
 _STYLES = {
     "title": "bold",
@@ -94,4 +97,4 @@ def _wrapped(text: str, width: int) -> list[str]:
     lines: list[str] = []
     for part in text.split("\n"):
         lines += textwrap.wrap(part, max(width, 30), break_long_words=False, break_on_hyphens=False) or [""]
-    return lines
+    return [line.replace(GLUE, " ") for line in lines]

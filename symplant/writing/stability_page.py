@@ -17,7 +17,7 @@ from symplant.derivation.stability.finding import (
 from symplant.writing.crossing_words import crossing_words
 from symplant.writing.derive_page import add_checks, add_failures, add_head
 from symplant.writing.numbers import number_text
-from symplant.writing.page import Page
+from symplant.writing.page import GLUE, Page
 from symplant.writing.plain import PlainFormulas
 
 if TYPE_CHECKING:
@@ -200,7 +200,9 @@ class _Writer:
 
 
 def _values(point: Point) -> str:
-    return ", ".join(f"{name} = {number_text(value)}" for name, value in point.items()) or "(no parameters)"
+    return ", ".join(f"{name}{GLUE}={GLUE}{number_text(value)}" for name, value in point.items()) or (
+        "(no parameters)"
+    )
 
 
 def routh_rows(finding: StabilityFinding, plain: PlainFormulas) -> list[str]:
