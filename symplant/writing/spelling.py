@@ -11,9 +11,7 @@ from symplant.errors import Fault, InputError
 from symplant.reading.latex import canonical_spelling, default_spelling
 
 if TYPE_CHECKING:
-    from symplant.algebra.ring import Element, Ring
     from symplant.plant.model import Model
-    from symplant.writing.formula import FormulaWriter
 
 __all__ = ["Spelling"]
 
@@ -86,7 +84,6 @@ class Spelling:
             raise InputError(faults)
         self.inverse: dict[str, str] = {latex: name for name, latex in self.names.items()}
         self.euler = next((e for e in ("e", r"\mathrm{e}") if e not in owners), "")
-        self._writers: dict[int, FormulaWriter] = {}
         self._compounds = frozenset(c for c in owners if " " in c)
 
     def __getitem__(self, name: str) -> str:
@@ -111,14 +108,6 @@ class Spelling:
     def is_word(self, name: str) -> bool:
         """Whether the spelling is upright and of several letters, so that it wants space round it."""
         return _UPRIGHT.match(self.names[name]) is not None
-
-    def polynomial(self, ring: Ring, element: Element) -> str:
-        """An element by falling powers of the variable, in LaTeX on one line."""
-        from symplant.writing.formula import FormulaWriter
-
-        if id(ring) not in self._writers:
-            self._writers[id(ring)] = FormulaWriter(ring, self)
-        return self._writers[id(ring)].latex(element)
 
     @property
     def has_compounds(self) -> bool:
