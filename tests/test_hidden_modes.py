@@ -13,10 +13,14 @@ import pytest
 import scipy.linalg
 import sympy
 
+from symplant.algebra.determinant import determinant
+from symplant.algebra.minor_factors import maximal_minor_factors
 from symplant.algebra.polynomial import Polynomial
+from symplant.algebra.ring import Ring
 from symplant.algebra.text import element_text
 from symplant.algebra.verdict import Verdict
 from symplant.derivation.derive import Derivation, derive
+from symplant.derivation.pencil import irreducible_factors
 from symplant.derivation.zeros.free_response import free_response
 from symplant.derivation.zeros.hidden import hidden_modes
 from symplant.derivation.zeros.hidden_findings import HiddenCase, HiddenModes
@@ -255,6 +259,25 @@ def test_cases_against_ranks_at_points(seed: int) -> None:
         elif on_case:
             # The degree may rise only where the leading coefficient of the solution vanishes as well.
             assert loss != generic, (p, q)
+
+
+@pytest.mark.parametrize("seed", range(25))
+def test_factors_of_a_maximal_minor(seed: int) -> None:
+    random = Random(seed)
+    ring = Ring("s", ("a", "b", "c"))
+    pool = [ring.gen("a"), ring.gen("b") - ring.gen("c"), ring.gen("a") + ring.gen("b"), ring.one, ring.zero]
+    size = random.choice([2, 3, 4])
+    rows = [
+        [random.choice(pool) * random.choice(pool) + random.choice([0, 0, 1]) for _ in range(size)]
+        for _ in range(size)
+    ]
+    expected = determinant(rows, ring.one)
+    found = maximal_minor_factors(ring, rows)
+    if not expected:
+        assert found is None
+        return
+    assert found is not None
+    assert sorted(map(str, found)) == sorted(map(str, irreducible_factors(ring, [expected])))
 
 
 def test_hidden_modes_stay_hidden_in_simulation() -> None:

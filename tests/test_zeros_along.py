@@ -324,6 +324,23 @@ def test_limits_of_the_balance_system() -> None:
     assert zeros == {sympy.sqrt(table["g"] / table["l"]), -sympy.sqrt(table["g"] / table["l"])}
 
 
+def test_too_large_equations_are_solved_at_nominal(monkeypatch: pytest.MonkeyPatch) -> None:
+    full = along(third_order(), "c")
+    monkeypatch.setattr("symplant.derivation.zeros.events.SIZE_LIMIT", -1.0)
+    short = along(third_order(), "c")
+    assert any("too large" in note for note in short.notes)
+    for kind in ("crosses on imaginary axis", "zeros meet", "cancels a pole"):
+        assert not events(short, kind)
+    # With only the letters' number in the way, the same values come out at the nominal point.
+    monkeypatch.setattr("symplant.derivation.zeros.events.SIZE_LIMIT", 0.1)
+    short = along(third_order(), "c")
+    for kind in ("crosses on imaginary axis", "zeros meet", "cancels a pole"):
+        mine, whole = events(short, kind), events(full, kind)
+        assert [v.lower for e in mine for v in e.nominal.values] == [
+            v.lower for e in whole for v in e.nominal.values
+        ]
+
+
 def test_unknown_parameter_is_refused() -> None:
     with pytest.raises(KeyError):
         along(case("two_mass"), "m3")

@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Collection
 from dataclasses import dataclass
 
+from symplant.algebra.decide_search import letters_in
 from symplant.algebra.expression import Node
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element
+from symplant.algebra.substitution import substituted
 from symplant.derivation.derive import Derivation
 from symplant.derivation.zeros.event_values import NominalValues, nominal_values, solved_for
-from symplant.derivation.zeros.events import EventKind, event_equations
+from symplant.derivation.zeros.events import EventEquation, EventKind, event_equations
 from symplant.derivation.zeros.limits import RootLimit, root_limits
 from symplant.derivation.zeros.sensitivities import (
     NominalSensitivity,
@@ -31,7 +33,8 @@ class Event:
 
     `values`: the equation solved for the parameter where it is linear or quadratic in it (tree, and
     ratio where there is no root sign).  `nominal`: all solutions with the other letters at nominal.
-    `frequency_squared`: of a crossing pair, valid where the equation holds.
+    `frequency_squared`: of a crossing pair, valid where the equation holds.  `at_nominal`: the equation
+    in letters would have been too large, so the other letters have their nominal values in it.
     """
 
     event: EventKind
@@ -39,6 +42,7 @@ class Event:
     values: tuple[tuple[Node, Ratio | None], ...]
     nominal: NominalValues
     frequency_squared: Ratio | None
+    at_nominal: bool = False
 
 
 @dataclass(frozen=True)
@@ -76,28 +80,20 @@ def along(
     model = derivation.model
     if parameter not in model.letters:
         raise KeyError(f"{parameter!r} is none of {', '.join(model.letters)}")
-    ring, around = derivation.ring, surroundings(derivation)
+    around = surroundings(derivation)
     zeros = target(derivation, output, input)
     notes: list[str] = []
     if zeros.is_zero:
         return Along(parameter, zeros, (), (), (), ("the transfer function is identically zero",))
     poles = derivation.characteristic_polynomial.polynomial
     stage("events")
-    equations, said = event_equations(zeros, poles, parameter, around, model.discrete)
-    notes += said
-    interval = next(p.interval for p in model.parameters if p.name == parameter)
-    events = tuple(
-        Event(
-            found.event,
-            found.equation,
-            solved_for(ring, found.equation, parameter),
-            nominal_values(
-                ring, found.equation, parameter, around.nominal, interval, found.frequency_squared
-            ),
-            found.frequency_squared,
-        )
-        for found in equations
-    )
+    found = event_equations(zeros, poles, parameter, around, model.discrete)
+    notes += found.notes
+    events = [_event(derivation, parameter, equation) for equation in found.equations]
+    if found.too_large:
+        more, said = _at_nominal(derivation, parameter, zeros, found.too_large)
+        events += more
+        notes += said
     stage("sensitivities")
     formulas = sensitivities(zeros, parameter, around, derivation.pencil.setting.converter().convert)
     numbers = [nominal_sensitivities(formula, around.nominal) for formula in formulas]
@@ -107,8 +103,45 @@ def along(
     return Along(
         parameter,
         zeros,
-        events,
-        tuple(SensitivityFinding(f, found, why) for f, (found, why) in zip(formulas, numbers, strict=True)),
+        tuple(events),
+        tuple(SensitivityFinding(f, at, why) for f, (at, why) in zip(formulas, numbers, strict=True)),
         limits,
         tuple(notes),
     )
+
+
+def _event(derivation: Derivation, parameter: str, found: EventEquation, at_nominal: bool = False) -> Event:
+    model, ring = derivation.model, derivation.ring
+    interval = next(p.interval for p in model.parameters if p.name == parameter)
+    return Event(
+        found.event,
+        found.equation,
+        solved_for(ring, found.equation, parameter),
+        nominal_values(ring, found.equation, parameter, model.nominal, interval, found.frequency_squared),
+        found.frequency_squared,
+        at_nominal,
+    )
+
+
+def _at_nominal(
+    derivation: Derivation, parameter: str, zeros: Polynomial, kinds: Collection[EventKind]
+) -> tuple[list[Event], list[str]]:
+    """Events of these kinds with all letters but one at their nominal values."""
+    ring, model, around = derivation.ring, derivation.model, surroundings(derivation)
+    poles = derivation.characteristic_polynomial.polynomial
+    elements = [zeros.element, poles.element]
+    others = [name for name in letters_in(ring, elements) if name != parameter]
+    named = ", ".join(sorted(kinds))
+    missing = [name for name in others if name not in model.nominal]
+    if missing or not ring.used(elements) <= {*ring.letters, ring.variable}:
+        why = f"no nominal value for {', '.join(missing)}" if missing else "functions of letters occur"
+        return [], [f"not worked out ({named}): the equation in letters would be too large, and {why}"]
+    values = {name: model.nominal[name] for name in others}
+    first, second = (Polynomial.of(ring, substituted(ring, [e], values)[0]) for e in elements)
+    if first.is_zero or second.is_zero:
+        return [], [f"not worked out ({named}): the polynomials vanish at the nominal point"]
+    found = event_equations(first, second, parameter, around, model.discrete)
+    events = [_event(derivation, parameter, e, True) for e in found.equations if e.event in kinds]
+    return events, [
+        f"with the other letters at nominal ({named}): the equation in letters would be too large"
+    ]

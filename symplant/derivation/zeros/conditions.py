@@ -16,8 +16,8 @@ from random import Random
 
 from symplant.algebra.determinant import determinant
 from symplant.algebra.division import quotient
-from symplant.algebra.polynomial import Polynomial, content
-from symplant.algebra.rank import exact_rank
+from symplant.algebra.minor_factors import maximal_minor_factors
+from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element, Ring
 from symplant.derivation.pencil import irreducible_factors
 from symplant.derivation.zeros.blocks import Blocks
@@ -43,15 +43,18 @@ class Candidates:
     found: bool
 
 
-def candidate_conditions(blocks: Blocks, generic: Polynomial) -> Candidates:
-    """Candidates for the input side; `generic` is the input-decoupling polynomial for general letters."""
+def candidate_conditions(blocks: Blocks, generic: Polynomial, enough: int = 2) -> Candidates:
+    """Candidates for the input side; `generic` is the input-decoupling polynomial for general letters.
+
+    Single inputs are tried until `enough` of them gave equations: the more, the fewer are `alone`.
+    """
     ring, (_, m, _) = blocks.ring, blocks.size
     found: list[list[Element]] = []
     for count, (feedback, direction) in enumerate(_inputs(blocks)):
         factors = _single_input(blocks, feedback, direction, generic)
         if factors is not None:
             found.append(factors)
-        if count + 1 >= m and len(found) >= min(m, 2):
+        if count + 1 >= m and len(found) >= min(m, enough):
             break
     if not found:
         return Candidates((), (), False)
@@ -112,8 +115,10 @@ def _single_input(
     factors = _coefficient_factors(ring, reduced)
     if factors is not None:
         return factors
-    # With a singular E the matrix W may be deficient though no finite mode is hidden.
     characteristic = quotient(Polynomial.of(ring, determinant(dynamics, ring.one)), generic)
+    if characteristic.degree + generic.degree == n:
+        return None  # W is deficient because a mode is uncontrollable from this input
+    # With a singular E it may also be deficient though no finite mode is hidden.
     return _resultant_factors(ring, characteristic, reduced)
 
 
@@ -126,33 +131,22 @@ def _weighted(ring: Ring, row: Sequence[Element], weights: Sequence[int]) -> Ele
 
 
 def _coefficient_factors(ring: Ring, polynomials: Sequence[Polynomial]) -> list[Element] | None:
-    """Factors of a maximal minor of the coefficient matrix, contents of its lines taken out first."""
+    """Factors of a maximal minor of the coefficient matrix; None if all these minors vanish."""
     if not polynomials:
         return None
     width = max(p.degree for p in polynomials) + 1
     rows = [[*p.coefficients, *([ring.zero] * (width - 1 - p.degree))] for p in polynomials]
-    factors: list[Element] = []
-    for i, row in enumerate(rows):
-        rows[i] = _freed(ring, row, factors)
-    columns = [_freed(ring, [row[j] for row in rows], factors) for j in range(width)]
-    rows = [[column[i] for column in columns] for i in range(len(rows))]
-    rank = exact_rank(ring, rows)
-    if rank.value < width:
-        return None
-    return [*factors, rank.minor]
-
-
-def _freed(ring: Ring, line: list[Element], factors: list[Element]) -> list[Element]:
-    common = content(ring, line)
-    if not common or common.is_constant():
-        return line
-    factors.append(common)
-    return [entry // common for entry in line]
+    return maximal_minor_factors(ring, rows)
 
 
 def _resultant_factors(
     ring: Ring, characteristic: Polynomial, polynomials: Sequence[Polynomial]
 ) -> list[Element] | None:
+    common = characteristic
+    for polynomial in polynomials:
+        common = common.gcd(polynomial)
+    if common.degree > 0:
+        return None
     random = Random(SEED)
     mixed = ring.zero
     for polynomial in polynomials:

@@ -12,6 +12,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from itertools import combinations
+from math import log10
 from typing import Literal, TypeAlias
 
 from symplant.algebra.bilinear import bilinear
@@ -27,8 +28,10 @@ from symplant.derivation.pencil import irreducible_factors
 from symplant.derivation.stability.crossings import frequency_squared
 from symplant.derivation.zeros.vanishing import Surroundings
 
-__all__ = ["EventEquation", "EventKind", "event_equations"]
+__all__ = ["EventEquation", "EventEquations", "EventKind", "event_equations"]
 
+#: Decimal logarithm of the number of terms above which an equation is not worked out.
+SIZE_LIMIT = 9.0
 EventKind: TypeAlias = Literal[
     "crosses at origin",
     "crosses on imaginary axis",
@@ -55,35 +58,58 @@ class EventEquation:
     frequency_squared: Ratio | None = None
 
 
+@dataclass(frozen=True)
+class EventEquations:
+    """The equations found, notes, and the kinds of event whose equation would have been too large."""
+
+    equations: tuple[EventEquation, ...]
+    notes: tuple[str, ...]
+    too_large: frozenset[EventKind]
+
+
 def event_equations(
     zeros: Polynomial, poles: Polynomial | None, letter: str, around: Surroundings, discrete: bool
-) -> tuple[list[EventEquation], list[str]]:
-    """The equations that contain the letter and can hold inside the box as far as signs tell; notes."""
+) -> EventEquations:
+    """The equations that contain the letter and can hold inside the box as far as signs tell."""
     ring = zeros.ring
     factors = [factor for factor, _ in factors_in_variable(zeros)]
     raw: list[tuple[EventKind, Element, Ratio | None]] = []
     notes: list[str] = []
+    large: set[EventKind] = set()
     for factor in factors:
-        found, said = _boundary(factor, discrete)
+        found, said, much = _boundary(factor, discrete)
         raw += found
         notes += said
+        large |= much
         raw.append(("goes to infinity", factor.leading, None))
         if factor.degree > 1:
-            raw.append(("zeros meet", factor.element.discriminant(ring.variable), None))
+            slope = Polynomial(ring, factor.element.derivative(ring.variable))
+            if _is_too_large(factor, slope):
+                large.add("zeros meet")
+            else:
+                raw.append(("zeros meet", factor.element.discriminant(ring.variable), None))
     for first, second in combinations(factors, 2):
-        raw.append(("zeros meet", _resultant(first, second), None))
+        if _is_too_large(first, second):
+            large.add("zeros meet")
+        else:
+            raw.append(("zeros meet", _resultant(first, second), None))
     if poles is not None:
-        found_, said = _cancellations(factors, poles)
-        raw += found_
+        found, said, much = _cancellations(factors, poles)
+        raw += found
         notes += said
-    return list(_sifted(ring, raw, letter, around)), list(dict.fromkeys(notes))
+        large |= much
+    equations = tuple(_sifted(ring, raw, letter, around))
+    return EventEquations(equations, tuple(dict.fromkeys(notes)), frozenset(large))
 
 
-def _boundary(
-    factor: Polynomial, discrete: bool
-) -> tuple[list[tuple[EventKind, Element, Ratio | None]], list[str]]:
+#: Equations with their frequency, notes, and kinds of event that were left out as too large.
+_Raw: TypeAlias = "tuple[list[tuple[EventKind, Element, Ratio | None]], list[str], set[EventKind]]"
+
+
+def _boundary(factor: Polynomial, discrete: bool) -> _Raw:
     found: list[tuple[EventKind, Element, Ratio | None]] = []
     notes: list[str] = []
+    kind: EventKind = "crosses on unit circle" if discrete else "crosses on imaginary axis"
     image = bilinear(factor) if discrete else factor
     edge = "on the unit circle" if discrete else "on the imaginary axis"
     if image.is_zero or image.degree < factor.degree:
@@ -91,7 +117,7 @@ def _boundary(
     elif discrete:
         found.append(("crosses at z = -1", image.leading, None))
     if image.degree < 1:
-        return found, notes
+        return found, notes, set()
     if not image.coefficients[0]:
         notes.append(
             "a zero lies at z = 1 for all values" if discrete else "a zero lies at the origin for all values"
@@ -100,30 +126,45 @@ def _boundary(
         found.append(("crosses at z = 1" if discrete else "crosses at origin", image.coefficients[0], None))
     if image.degree > 1:
         order = image.degree - 1
+        if _is_too_large(image, image, order):
+            return found, notes, {kind}
         pair = image.ring.reduce(hurwitz_minor(image.ring, image.coefficients, order))
         if pair:
-            kind: EventKind = "crosses on unit circle" if discrete else "crosses on imaginary axis"
             found.append((kind, pair, frequency_squared(image)))
         else:
             notes.append(
                 f"some zeros lie symmetric to the boundary for all values: none of them crosses {edge}"
             )
-    return found, notes
+    return found, notes, set()
 
 
-def _cancellations(
-    factors: Sequence[Polynomial], poles: Polynomial
-) -> tuple[list[tuple[EventKind, Element, Ratio | None]], list[str]]:
+def _cancellations(factors: Sequence[Polynomial], poles: Polynomial) -> _Raw:
     found: list[tuple[EventKind, Element, Ratio | None]] = []
     notes: list[str] = []
+    large: set[EventKind] = set()
     for pole, _ in factors_in_variable(poles):
         for factor in factors:
+            if _is_too_large(factor, pole):
+                large.add("cancels a pole")
+                continue
             resultant = _resultant(factor, pole)
             if resultant:
                 found.append(("cancels a pole", resultant, None))
             else:
                 notes.append("a zero cancels a pole for all values")
-    return found, notes
+    return found, notes, large
+
+
+def _is_too_large(first: Polynomial, second: Polynomial, order: int | None = None) -> bool:
+    """Whether a resultant, or a determinant of `order` rows, is likely to have too many terms.
+
+    The estimate is the number of products in one term of the determinant of Sylvester's matrix, each
+    factor with the mean number of terms of a coefficient.
+    """
+    sizes = [log10(max(1.0, len(p.element) / (p.degree + 1))) for p in (first, second)]
+    if order is not None:
+        return order * sizes[0] > SIZE_LIMIT
+    return second.degree * sizes[0] + first.degree * sizes[1] > SIZE_LIMIT
 
 
 def _resultant(first: Polynomial, second: Polynomial) -> Element:

@@ -28,6 +28,10 @@ __all__ = ["hidden_modes"]
 
 #: Conditions that are put in and looked at before the rest is left out with a note.
 CASE_LIMIT = 200
+#: Times as many terms as the plant may have the pencil in which a second equation is looked for.
+GROWTH_LIMIT = 2
+#: Most terms of the conditions under which a second and a third equation is looked for.
+LONGEST_CONDITION = (12, 2)
 #: Equations that are looked for at once.
 DEPTH_LIMIT = 3
 
@@ -83,6 +87,7 @@ class _CaseBook:
         self.notes: list[str] = []
         self.gaps = False
         self.single: list[Element] = []  # conditions that make a case on their own
+        self.explored: list[tuple[Element, set[str]]] = []  # under these everything was looked for
         self.looked_at = 0
 
     def write(self) -> None:
@@ -101,7 +106,8 @@ class _CaseBook:
         for side in sides:
             self.stage(f"conditions of the {side}s")
             flipped = blocks if side == "input" else blocks.transposed()
-            found = candidate_conditions(flipped, known.input if side == "input" else known.output)
+            generic = known.input if side == "input" else known.output
+            found = candidate_conditions(flipped, generic, 1 if chain.images else 2)
             if not found.found and any(any(row) for row in flipped.drive):
                 self._gap(f"no single {side} was found whose conditions do not vanish identically")
             for condition in (*found.alone, *found.together):
@@ -110,7 +116,7 @@ class _CaseBook:
                 candidate.alone = candidate.alone or condition in found.alone
         deeper: list[_Branch] = []
         for candidate in wanted.values():
-            if self._is_excluded(chain, candidate.condition):
+            if self._is_excluded(chain, candidate):
                 continue
             if self.looked_at >= CASE_LIMIT:
                 self._gap(f"only the first {CASE_LIMIT} conditions were looked at")
@@ -119,9 +125,12 @@ class _CaseBook:
             deeper += self._look(chain, blocks, known, candidate)
         for branch in deeper:
             self._explore(*branch)
+            if not chain.images:
+                self.explored.append((branch[0].images[0].condition, set(branch[3])))
 
-    def _is_excluded(self, chain: ConditionChain, condition: Element) -> bool:
-        """Whether the plant is not defined there, or a case already met covers the condition."""
+    def _is_excluded(self, chain: ConditionChain, candidate: _Candidate) -> bool:
+        """Whether the plant is not defined there, or what was looked at before covers the condition."""
+        condition = candidate.condition
         if not chain.images:
             return str(condition) in self.divisors
         for element in chain.leading:
@@ -130,7 +139,8 @@ class _CaseBook:
                 if vanishing(chain.target, element, self.around).verdict is not Verdict.REFUTED:
                     self._gap("where a coefficient that was divided by vanishes too, nothing was looked for")
                 return True
-        for element in (*self.single, *self.derivation.assumed_nonzero):
+        covered = [element for element, sides in self.explored if sides >= set(candidate.sides)]
+        for element in (*self.single, *self.derivation.assumed_nonzero, *covered):
             image = chain.image(Polynomial.of(chain.ring, element)).element
             if not image or not image % condition:
                 return True
@@ -141,6 +151,10 @@ class _CaseBook:
     ) -> list[_Branch]:
         """Enter the cases of one condition; returned is where more equations are to be looked for."""
         condition = candidate.condition
+        if not candidate.alone and len(condition) > LONGEST_CONDITION[0]:
+            if vanishing(blocks.ring, condition, self.around).verdict is not Verdict.REFUTED:
+                self._gap("cases that need several equations at once were not all looked for")
+            return []
         solved = solve_for_letter(blocks.ring, condition)
         if not solved:
             self._unsolved(chain, blocks, candidate)
@@ -168,7 +182,10 @@ class _CaseBook:
                 if _degree(parts, side) == _degree(before, side) and self._may_need_more(chain, blocks, side)
             ]
             if rest and self._is_possible(image):
-                deeper.append((longer, there, parts, rest))
+                if self._is_small(longer, there):
+                    deeper.append((longer, there, parts, rest))
+                else:
+                    self._gap("cases that need several equations at once were not all looked for")
         return deeper
 
     def _may_need_more(self, chain: ConditionChain, blocks: Blocks, side: str) -> bool:
@@ -179,6 +196,15 @@ class _CaseBook:
             self._gap(f"cases that need more than {DEPTH_LIMIT} equations at once were not looked for")
             return False
         return len(chain.images) + 1 < needed
+
+    def _is_small(self, chain: ConditionChain, blocks: Blocks) -> bool:
+        """Whether the conditions and the pencil are short enough for a search for one more equation."""
+        longest = max(len(image.condition) for image in chain.images)
+        return (
+            not any(image.root for image in chain.images)
+            and longest <= LONGEST_CONDITION[len(chain.images) - 1]
+            and _terms(blocks) <= GROWTH_LIMIT * _terms(self.blocks)
+        )
 
     def _is_possible(self, image: LetterImage) -> bool:
         return vanishing(image.source, image.condition, self.around).verdict is not Verdict.REFUTED
@@ -281,6 +307,10 @@ class _CaseBook:
     def _gap(self, note: str) -> None:
         self.gaps = True
         self.notes.append(note)
+
+
+def _terms(blocks: Blocks) -> int:
+    return sum(len(entry) for row in blocks.rows for entry in row)
 
 
 def _nothing(parts: HiddenParts) -> HiddenParts:
