@@ -153,6 +153,12 @@ def test_conditions_through_square_roots() -> None:
     assert all(case.stability.verdict == "stable" for case in cases)
 
 
+def test_sampled_plant_hides_nothing_at_a_positive_sampling_time() -> None:
+    found = book("ogata_digital")
+    assert found.complete is Verdict.PROVED
+    assert all(case.inside_box.verdict is Verdict.REFUTED and not case.warning for case in found.cases)
+
+
 def test_two_equations_at_once() -> None:
     # The second mode is lost on the input side only where both b1 and b2 vanish.
     derivation = plant(

@@ -23,6 +23,7 @@ from symplant.algebra.verdict import Verdict
 from symplant.derivation.derive import Derivation, derive
 from symplant.derivation.zeros.along import Along, Event, along
 from symplant.derivation.zeros.closed_forms import closed_forms
+from symplant.derivation.zeros.minimum_phase import minimum_phase
 from symplant.derivation.zeros.structure import surroundings
 from symplant.derivation.zeros.target import target
 from symplant.reading.fault_list import FaultList
@@ -339,6 +340,22 @@ def test_too_large_equations_are_solved_at_nominal(monkeypatch: pytest.MonkeyPat
         assert [v.lower for e in mine for v in e.nominal.values] == [
             v.lower for e in whole for v in e.nominal.values
         ]
+
+
+@pytest.mark.parametrize(
+    ("name", "output", "input", "verdict"),
+    [
+        # Erickson, Maksimovic (from memory): the zero of the buck-boost lies in the right half plane.
+        ("buck_boost", "v", "d", "unstable"),
+        ("two_mass", "x1", "u", "marginal"),
+        ("two_mass", "x2", "u", "stable"),
+        ("balance_system", "p", "F", "unstable"),
+        ("boost_parasitics", "y", "d", "conditional"),
+        ("kundur_regulator", "angle", "torque", "conditional"),
+    ],
+)
+def test_minimum_phase(name: str, output: str, input: str, verdict: str) -> None:
+    assert minimum_phase(case(name), output, input).verdict == verdict
 
 
 def test_unknown_parameter_is_refused() -> None:

@@ -6,6 +6,7 @@ from symplant.derivation.zeros.directions import directions
 from symplant.derivation.zeros.free_response import free_response
 from symplant.derivation.zeros.hidden import hidden_modes
 from symplant.derivation.zeros.influence import influence
+from symplant.derivation.zeros.minimum_phase import minimum_phase
 from symplant.derivation.zeros.structure import find_zeros
 from symplant.derivation.zeros.target import target
 
@@ -17,5 +18,6 @@ __all__ = [
     "free_response",
     "hidden_modes",
     "influence",
+    "minimum_phase",
     "target",
 ]

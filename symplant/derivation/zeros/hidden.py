@@ -6,21 +6,18 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from typing import TypeAlias
 
-from symplant.algebra.division import normalised, quotient
 from symplant.algebra.letter_images import LetterImage, solve_for_letter
 from symplant.algebra.polynomial import Polynomial
-from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element
 from symplant.algebra.verdict import Verdict
-from symplant.derivation.derive import Channel, Derivation
+from symplant.derivation.derive import Derivation
 from symplant.derivation.zeros.blocks import Blocks
 from symplant.derivation.zeros.case_conditions import ConditionChain
+from symplant.derivation.zeros.case_entries import CaseEntries
 from symplant.derivation.zeros.conditions import candidate_conditions
-from symplant.derivation.zeros.free_response import free_response, free_responses
-from symplant.derivation.zeros.hidden_findings import HiddenCase, HiddenModes, ReducedChannel
-from symplant.derivation.zeros.hidden_kinds import Kind
+from symplant.derivation.zeros.free_response import free_response
+from symplant.derivation.zeros.hidden_findings import HiddenModes
 from symplant.derivation.zeros.hidden_parts import HiddenParts, hidden_parts
-from symplant.derivation.zeros.mode_stability import ModeStability, mode_stability
 from symplant.derivation.zeros.structure import channel_positions, find_zeros, surroundings
 from symplant.derivation.zeros.vanishing import vanishing
 
@@ -52,7 +49,9 @@ def hidden_modes(
     book.write()
     responses = tuple(r for r in free_response(derivation) if r.output in outputs)
     complete = Verdict.UNDECIDED if book.gaps else Verdict.PROVED
-    return HiddenModes(structure, tuple(book.cases), responses, complete, tuple(dict.fromkeys(book.notes)))
+    return HiddenModes(
+        structure, book.entries.sorted(), responses, complete, tuple(dict.fromkeys(book.notes))
+    )
 
 
 @dataclass
@@ -79,11 +78,8 @@ class _CaseBook:
         self.derivation, self.stage = derivation, stage
         self.around = surroundings(derivation)
         self.blocks = Blocks.of(derivation.pencil, outputs, inputs)
-        model = derivation.model
-        self.outputs = [model.outputs[i].name for i in outputs]
-        self.inputs = [model.inputs[j].name for j in inputs]
         self.divisors = {str(element) for element in derivation.assumed_nonzero}
-        self.cases: list[HiddenCase] = []
+        self.entries = CaseEntries(derivation, outputs, inputs)
         self.notes: list[str] = []
         self.gaps = False
         self.single: list[Element] = []  # conditions that make a case on their own
@@ -94,9 +90,8 @@ class _CaseBook:
         generic = hidden_parts(self.blocks)
         assert generic is not None  # derive refuses a pencil that is singular for all letters
         start = ConditionChain(self.blocks.ring)
-        self._enter(start, self.blocks, generic, dict(generic.beyond(_nothing(generic))))
+        self.entries.enter(start, self.blocks, generic, generic.beyond(_nothing(generic)))
         self._explore(start, self.blocks, generic, ("input", "output"))
-        self.cases.sort(key=lambda case: (len(case.conditions), case.inside_box.verdict is Verdict.REFUTED))
 
     def _explore(
         self, chain: ConditionChain, blocks: Blocks, known: HiddenParts, sides: Sequence[str]
@@ -171,7 +166,7 @@ class _CaseBook:
             before = known.imaged(image)
             extra = parts.beyond(before)
             if extra:
-                self._enter(longer, there, parts, extra)
+                self.entries.enter(longer, there, parts, extra)
                 if not chain.images:
                     self.single.append(condition)
             if parts.verdict is not Verdict.PROVED:
@@ -210,99 +205,14 @@ class _CaseBook:
         return vanishing(image.source, image.condition, self.around).verdict is not Verdict.REFUTED
 
     def _unsolved(self, chain: ConditionChain, blocks: Blocks, candidate: _Candidate) -> None:
-        """A condition that no letter could be solved from: named, its mode left open."""
         inside = vanishing(blocks.ring, candidate.condition, self.around)
         if inside.verdict is Verdict.REFUTED:
             return
-        if not candidate.alone:
-            self._gap("cases that need several equations at once were not all looked for")
-            return
-        sides = candidate.sides
-        kind: Kind = "both" if len(sides) == 2 else "uncontrollable" if "input" in sides else "unobservable"
-        reason = "no letter could be solved from the condition: which mode hides was not worked out"
-        self.cases.append(
-            HiddenCase(
-                (*chain.conditions, candidate.condition),
-                None,
-                kind,
-                ModeStability("undecided", reason),
-                inside,
-                (),
-                (),
-                chain.images,
-                Verdict.UNDECIDED,
-                reason,
-                "a mode may hide here, and it may be unstable",
-            )
-        )
+        reason = "cases that need several equations at once were not all looked for"
+        if candidate.alone:
+            reason = "no letter could be solved from the condition: which mode hides was not worked out"
+            self.entries.enter_unsolved(chain, candidate.condition, candidate.sides, inside, reason)
         self._gap(reason)
-
-    def _enter(
-        self, chain: ConditionChain, blocks: Blocks, parts: HiddenParts, extra: dict[Kind, Polynomial]
-    ) -> None:
-        if not extra:
-            return
-        inside = chain.inside(self.around)
-        reduced = tuple(self._reduced(chain, channel) for channel in self._channels())
-        responses = free_responses(blocks)
-        for kind, factor in extra.items():
-            shown = normalised(chain.back(factor))
-            if any(self._is_same(case, chain, kind, shown) for case in self.cases):
-                continue
-            stability = mode_stability(shown, chain, self.around, self.derivation.model.discrete)
-            visible = tuple(
-                self.outputs[r.output] for r in responses if kind == "uncontrollable" and r.shows(factor)
-            )
-            self.cases.append(
-                HiddenCase(
-                    chain.conditions,
-                    shown,
-                    kind,
-                    stability,
-                    inside,
-                    reduced,
-                    visible,
-                    chain.images,
-                    parts.verdict,
-                    parts.reason,
-                    _warning(kind, stability, inside.verdict, visible),
-                )
-            )
-
-    def _is_same(self, case: HiddenCase, chain: ConditionChain, kind: Kind, factor: Polynomial) -> bool:
-        """Whether a case says the same (sin t = 0 is solved twice, with cos t = 1 and -1)."""
-        known = case.hidden_factor
-        return (
-            case.kind == kind
-            and [str(c) for c in case.conditions] == [str(c) for c in chain.conditions]
-            and known is not None
-            and known.element == factor.element
-        )
-
-    def _channels(self) -> list[Channel]:
-        return [
-            channel
-            for channel in self.derivation.channels
-            if channel.output.name in self.outputs and channel.input.name in self.inputs
-        ]
-
-    def _reduced(self, chain: ConditionChain, channel: Channel) -> ReducedChannel:
-        pair = [channel.numerator, channel.denominator]
-        for image in chain.images:
-            row = image.row([polynomial.element for polynomial in pair])
-            pair = [Polynomial.of(image.target, element) for element in row]
-        numerator, denominator = pair
-        common = denominator if numerator.is_zero else numerator.gcd(denominator)
-        if common.degree > 0:
-            numerator, denominator = _cancelled(numerator, denominator, common)
-        ring = chain.ring
-        ratio = Ratio.of(ring, chain.back(numerator).element, chain.back(denominator).element)
-        return ReducedChannel(
-            channel.output.name,
-            channel.input.name,
-            Polynomial.of(ring, ratio.numerator),
-            Polynomial.of(ring, ratio.denominator),
-        )
 
     def _gap(self, note: str) -> None:
         self.gaps = True
@@ -320,31 +230,3 @@ def _nothing(parts: HiddenParts) -> HiddenParts:
 
 def _degree(parts: HiddenParts, side: str) -> int:
     return (parts.input if side == "input" else parts.output).degree
-
-
-def _warning(kind: Kind, stability: ModeStability, inside: Verdict, visible: Sequence[str]) -> str:
-    if stability.verdict == "stable" or inside is Verdict.REFUTED:
-        return ""
-    word = {
-        "unstable": "is not stable",
-        "marginal": "does not decay",
-        "conditional": "is unstable for some values",
-        "undecided": "may be unstable",
-    }[stability.verdict]
-    where = f"; it shows in the response to initial conditions of {', '.join(visible)}" if visible else ""
-    return f"a mode that the transfer function does not show ({kind}) {word}{where}"
-
-
-def _cancelled(
-    numerator: Polynomial, denominator: Polynomial, common: Polynomial
-) -> tuple[Polynomial, Polynomial]:
-    """Both without the common factor, their ratio unchanged."""
-    if numerator.is_zero:
-        return numerator, Polynomial.constant(numerator.ring, 1)
-    ring, top, bottom = numerator.ring, quotient(numerator, common), quotient(denominator, common)
-    if ring.has_relations:
-        # There each division multiplies by powers of a leading coefficient; put the ratio right.
-        scale = Ratio.of(ring, numerator.leading * bottom.leading, denominator.leading * top.leading)
-        top = Polynomial.of(ring, top.element * scale.numerator)
-        bottom = Polynomial.of(ring, bottom.element * scale.denominator)
-    return top, bottom

@@ -8,9 +8,11 @@ from fractions import Fraction
 from math import isqrt
 
 from symplant.algebra.box import Box, Interval
+from symplant.algebra.conversion import Converter
 from symplant.algebra.decide import decide_positive
 from symplant.algebra.decide_search import letters_in
 from symplant.algebra.enclosure import certified_sign
+from symplant.algebra.expression import Call, walk
 from symplant.algebra.points import ladder, points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign
@@ -63,6 +65,10 @@ def vanishing(ring: Ring, element: Element, around: Surroundings) -> Vanishing:
         return Vanishing(Verdict.PROVED, "identically zero", {})
     if factored_sign(ring, element).is_nonzero:
         return Vanishing(Verdict.REFUTED, "its terms, by their signs over the box, cannot cancel")
+    if _is_exponential_less_one(ring, element):
+        return Vanishing(
+            Verdict.REFUTED, "exp(x) is 1 at x = 0 alone, and its argument is not zero in the box"
+        )
     letters = letters_in(ring, (element, *around.nonzero))
     for point in points(around.box, letters, around.nominal, POINTS):
         for letter, value in solutions(ring, element, point):
@@ -84,6 +90,19 @@ def vanishing(ring: Ring, element: Element, around: Surroundings) -> Vanishing:
         Verdict.UNDECIDED,
         f"neither the sign ladder nor {POINTS} points of the box settle whether it vanishes",
     )
+
+
+def _is_exponential_less_one(ring: Ring, element: Element) -> bool:
+    """Whether an element is exp(x) - 1, up to its sign, with an argument x of known nonzero sign."""
+    function = next((f for f in ring.functions if f.key in ring.used([element])), None)
+    if function is None or function.kind != "exp" or function.argument is None or len(element) != 2:
+        return False
+    if element not in (ring.gen(function.key) - 1, 1 - ring.gen(function.key)):
+        return False
+    if any(isinstance(part, Call) for part in walk(function.argument)):
+        return False
+    argument = Converter(ring).convert(function.argument)
+    return (factored_sign(ring, argument.numerator) * factored_sign(ring, argument.denominator)).is_nonzero
 
 
 def _without_root(ring: Ring, element: Element) -> Element:
