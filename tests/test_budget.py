@@ -20,6 +20,12 @@ LATE = 4.0  # seconds within which a loaded machine must have done what takes a 
 HIDDEN_MESSAGES = re.compile("Traceback|FLINT|Exception|Aborted")
 
 
+def _hear_signals():
+    """A runner in the background, or under nohup, hands signals down as ignored; the jobs shall hear them."""
+    for number in (signal.SIGINT, signal.SIGTERM, signal.SIGHUP):
+        signal.signal(number, signal.SIG_DFL)
+
+
 class Run:
     """One run of the program; `finish` waits for it and checks that no process of it is left."""
 
@@ -36,6 +42,7 @@ class Run:
             stdin=subprocess.DEVNULL,
             env=environment,
             process_group=0,
+            preexec_fn=_hear_signals,
         )
 
     def wait_until_ready(self):
