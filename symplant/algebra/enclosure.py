@@ -123,6 +123,8 @@ def certified_sign(ring: Ring, element: Element, point: Mapping[str, Fraction]) 
                 return 1
             if value < 0:
                 return -1
+            if value.is_zero():  # exp(0) - 1: every ball in it was a number
+                return 0
     return None
 
 

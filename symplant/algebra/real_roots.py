@@ -11,6 +11,9 @@ from typing import Any
 
 from flint import arb, ctx, fmpz_poly
 
+from symplant.algebra.ball_roots import only_constants_beside, real_enclosures
+from symplant.algebra.enclosure import certified_sign
+from symplant.algebra.factors import factors
 from symplant.algebra.ring import Element, Ring
 
 __all__ = ["RealRoot", "between", "letter_coefficients", "real_roots"]
@@ -23,12 +26,13 @@ PRECISIONS = (128, 256, 512, 1024, 2048, 4096)
 class RealRoot:
     """One real root: `lower` <= root <= `upper`, equal when the root is rational.
 
-    `factor` holds the ascending coefficients of the irreducible factor that it belongs to, and
+    `factor` holds the ascending coefficients of the irreducible factor that it belongs to, or its text
+    where functions of numbers stand in it, and
     `multiplicity` is its multiplicity in the polynomial that was asked about.  An irrational root is
     the only root of `factor` in its enclosure, which is proved by a change of sign at the ends.
     """
 
-    factor: tuple[int, ...]
+    factor: tuple[int, ...] | str
     lower: Fraction
     upper: Fraction
     multiplicity: int = 1
@@ -65,23 +69,43 @@ def letter_coefficients(ring: Ring, element: Element, letter: str) -> list[int]:
 def real_roots(ring: Ring, elements: Iterable[Element], letter: str) -> list[RealRoot]:
     """The distinct real roots of the product of nonzero elements in one letter, ascending and disjoint.
 
+    Functions of numbers may stand in the coefficients. Errors: ValueError for other generators and for
+    zero; ArithmeticError where the roots cannot be told apart.
+
     >>> ring = Ring("s", ("K",))
     >>> K = ring.gen("K")
     >>> [(root.exact, root.multiplicity) for root in real_roots(ring, [(2 * K - 15) ** 2 * K], "K")]
     [(Fraction(0, 1), 1), (Fraction(15, 2), 2)]
     """
     found: dict[tuple[int, ...], int] = {}
+    constants: dict[str, tuple[Element, int]] = {}
     for element in elements:
         if not element:
             raise ValueError("every number is a root of the zero polynomial")
-        for factor, exponent in fmpz_poly(letter_coefficients(ring, element, letter)).factor()[1]:
-            key = tuple(int(c) for c in factor.coeffs())
-            found[key] = found.get(key, 0) + int(exponent)
+        if ring.used([element]) <= {letter}:
+            _count(found, letter_coefficients(ring, element, letter))
+            continue
+        if not only_constants_beside(ring, element, letter):
+            raise ValueError(f"not a polynomial in {letter} alone")
+        for factor, exponent in factors(element)[1]:
+            if ring.used([factor]) <= {letter}:
+                _count(found, letter_coefficients(ring, factor, letter), exponent)
+            elif letter in ring.used([factor]):
+                before = constants.get(str(factor), (factor, 0))[1]
+                constants[str(factor)] = factor, before + exponent
+            elif not certified_sign(ring, factor, {}):
+                raise ArithmeticError("a factor made of functions of numbers may be zero")
     for precision in PRECISIONS:
-        roots = _isolated(found, precision)
+        roots = _isolated(ring, letter, found, constants, precision)
         if roots is not None:
             return roots
     raise ArithmeticError("real roots too close to be told apart at the highest precision")
+
+
+def _count(found: dict[tuple[int, ...], int], coefficients: list[int], times: int = 1) -> None:
+    for factor, exponent in fmpz_poly(coefficients).factor()[1]:
+        key = tuple(int(c) for c in factor.coeffs())
+        found[key] = found.get(key, 0) + times * int(exponent)
 
 
 def between(left: Fraction | None, right: Fraction | None) -> Fraction:
@@ -116,9 +140,20 @@ def _simplest(left: Fraction, right: Fraction) -> Fraction:
     return whole + 1 / inner
 
 
-def _isolated(found: dict[tuple[int, ...], int], precision: int) -> list[RealRoot] | None:
+def _isolated(
+    ring: Ring,
+    letter: str,
+    found: dict[tuple[int, ...], int],
+    constants: dict[str, tuple[Element, int]],
+    precision: int,
+) -> list[RealRoot] | None:
     """All roots with disjoint enclosures, or None if the precision does not suffice."""
     roots: list[RealRoot] = []
+    for text, (element, multiplicity) in constants.items():
+        enclosures = real_enclosures(ring, element, letter, precision)
+        if enclosures is None:
+            return None
+        roots += [RealRoot(text, lower, upper, multiplicity) for lower, upper in enclosures]
     for key, multiplicity in found.items():
         if len(key) == 2:
             value = Fraction(-key[0], key[1])
@@ -132,7 +167,8 @@ def _isolated(found: dict[tuple[int, ...], int], precision: int) -> list[RealRoo
     if any(a.upper >= b.lower for a, b in pairwise(roots)):
         return None
     # 100 bits of each root are enough for any decimals asked for.
-    if any(r.upper - r.lower > max(abs(r.lower), abs(r.upper)) / (1 << 90) for r in roots):
+    exact = [r for r in roots if not isinstance(r.factor, str)]
+    if any(r.upper - r.lower > max(abs(r.lower), abs(r.upper)) / (1 << 90) for r in exact):
         return None
     return roots
 

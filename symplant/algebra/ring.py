@@ -101,8 +101,18 @@ class Ring:
     @cached_property
     def signs(self) -> tuple[Sign, ...]:
         """What is known of the sign of each generator, by position."""
-        known = {function.key: function.sign for function in self.functions}
+        known = {function.key: self._sign(function) for function in self.functions}
         return tuple(known.get(key, self.box.sign(key)) for key in self.keys)
+
+    def _sign(self, function: Generator) -> Sign:
+        """The sign that was found when the ring was built, else what the ranges of the letters tell."""
+        if function.sign is not Sign.REAL:
+            return function.sign
+        from symplant.algebra.function_range import tree_range
+        from symplant.algebra.value_range import interval_range
+
+        ranges = {name: interval_range(interval) for name, interval in self.box.intervals.items()}
+        return tree_range(function.meaning, ranges).sign
 
     def gen(self, key: str) -> Element:
         """The generator with this key (a letter, the variable or a function)."""
