@@ -286,6 +286,13 @@ def test_factors_of_a_maximal_minor(seed: int) -> None:
     assert sorted(map(str, found)) == sorted(map(str, irreducible_factors(ring, [expected])))
 
 
+def test_equations_that_grow_too_large_are_named(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("symplant.algebra.minor_factors.PRODUCT_LIMIT", 0)
+    found = hidden_modes(derive(read_plant_file(CASES / "car_handling.toml")))
+    assert found.complete is Verdict.UNDECIDED
+    assert any("too large" in note for note in found.notes)
+
+
 def test_hidden_modes_stay_hidden_in_simulation() -> None:
     """At equal lengths the difference of the angles is not moved by any input."""
     g, length = 9.81, 0.7

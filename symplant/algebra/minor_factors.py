@@ -12,8 +12,12 @@ from dataclasses import dataclass, field
 from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.polynomial import content
 from symplant.algebra.ring import Element, Ring
+from symplant.errors import UndecidedError
 
 __all__ = ["maximal_minor_factors"]
+
+#: Most products of terms in one step of the elimination.
+PRODUCT_LIMIT = 20_000_000
 
 
 @dataclass
@@ -27,6 +31,8 @@ class _Row:
 
 def maximal_minor_factors(ring: Ring, rows: Sequence[Sequence[Element]]) -> list[Element] | None:
     """Irreducible factors of some nonzero minor that takes all columns; None if all of them vanish.
+
+    Errors: UndecidedError where the elements in between grow too large.
 
     Shape r x c with r >= c.  Wherever the matrix has a rank below c one of the factors vanishes.  In a
     ring with relations there may be more factors than the minor has.
@@ -60,6 +66,10 @@ def maximal_minor_factors(ring: Ring, rows: Sequence[Sequence[Element]]) -> list
                 continue
             common = pivot.gcd(entry)
             lift, weight = pivot // common, entry // common
+            if _products(lift, row.entries) + _products(weight, chosen.entries) > PRODUCT_LIMIT:
+                raise UndecidedError(
+                    "the factors of a minor", "elimination, until its elements grew too large"
+                )
             row.entries = [
                 ring.reduce(lift * x - weight * y) for x, y in zip(row.entries, chosen.entries, strict=True)
             ]
@@ -67,6 +77,10 @@ def maximal_minor_factors(ring: Ring, rows: Sequence[Sequence[Element]]) -> list
                 row.above.append(lift)
             _primitive(ring, row)
     return [factor for factor, total in powers.values() if total > 0 or ring.has_relations]
+
+
+def _products(factor: Element, entries: Sequence[Element]) -> int:
+    return len(factor) * sum(len(entry) for entry in entries)
 
 
 def _primitive(ring: Ring, row: _Row) -> _Row:

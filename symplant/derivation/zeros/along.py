@@ -76,6 +76,25 @@ def along(
     """Events, sensitivities and limits of the zeros of the plant or of one channel.
 
     Errors: KeyError for a name that is no parameter, output or input.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> found = along(derivation, "b")
+    >>> [(event.event, str(event.equation)) for event in found.events]
+    [('cancels a pole', 'a - b - 1')]
+    >>> found.events[0].nominal.values[0].lower
+    Fraction(2, 1)
     """
     model = derivation.model
     if parameter not in model.letters:

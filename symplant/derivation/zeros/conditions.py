@@ -21,12 +21,15 @@ from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element, Ring
 from symplant.derivation.pencil import irreducible_factors
 from symplant.derivation.zeros.blocks import Blocks
+from symplant.errors import UndecidedError
 
 __all__ = ["Candidates", "candidate_conditions"]
 
 SEED = 4711
 #: Single inputs that are tried before the search is given up.
 ATTEMPTS = 60
+#: Single inputs with equations that are too large before the search is given up.
+FAILURES = 3
 
 
 @dataclass(frozen=True)
@@ -47,15 +50,27 @@ def candidate_conditions(blocks: Blocks, generic: Polynomial, enough: int = 2) -
     """Candidates for the input side; `generic` is the input-decoupling polynomial for general letters.
 
     Single inputs are tried until `enough` of them gave equations: the more, the fewer are `alone`.
+    Errors: UndecidedError where the equations of every single input grow too large.
     """
     ring, (_, m, _) = blocks.ring, blocks.size
     found: list[list[Element]] = []
+    failures = 0
     for count, (feedback, direction) in enumerate(_inputs(blocks)):
-        factors = _single_input(blocks, feedback, direction, generic)
+        try:
+            factors = _single_input(blocks, feedback, direction, generic)
+        except UndecidedError:
+            failures += 1
+            if failures == FAILURES and not found:
+                raise
+            if failures == FAILURES:
+                break
+            continue
         if factors is not None:
             found.append(factors)
         if count + 1 >= m and len(found) >= min(m, enough):
             break
+    if not found and failures:
+        raise UndecidedError("the conditions", "single inputs, whose equations grew too large")
     if not found:
         return Candidates((), (), False)
     sorted_out = sorted((irreducible_factors(ring, factors) for factors in found), key=_weight)

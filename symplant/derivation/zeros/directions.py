@@ -60,6 +60,23 @@ def directions(derivation: Derivation, output: str | None = None, input: str | N
     """The directions of the invariant zeros of the plant, or of the part between an input and an output.
 
     Errors: KeyError for a name that is no output or input.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> (direction,) = directions(derivation).directions
+    >>> direction.zero.numerator, direction.state, direction.input
+    (-b - 1, (0, 1), (-1,))
     """
     outputs, inputs = channel_positions(derivation, output, input)
     blocks = Blocks.of(derivation.pencil, outputs, inputs)

@@ -41,7 +41,25 @@ class FreeResponse:
 
 
 def free_response(derivation: Derivation) -> tuple[FreeResponse, ...]:
-    """The free response of every output."""
+    """The free response of every output.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> (response,) = free_response(derivation)
+    >>> [numerator.element for numerator in response.numerators]
+    [s + b, 1]
+    """
     return free_responses(Blocks.of(derivation.pencil), derivation.pencil.output_multipliers)
 
 

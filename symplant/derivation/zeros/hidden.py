@@ -20,6 +20,7 @@ from symplant.derivation.zeros.hidden_findings import HiddenModes
 from symplant.derivation.zeros.hidden_parts import HiddenParts, hidden_parts
 from symplant.derivation.zeros.structure import channel_positions, find_zeros, surroundings
 from symplant.derivation.zeros.vanishing import vanishing
+from symplant.errors import UndecidedError
 
 __all__ = ["hidden_modes"]
 
@@ -42,6 +43,23 @@ def hidden_modes(
     """The case book of the plant, or of the part that is seen from one output or driven by one input.
 
     Errors: KeyError for a name that is no output or input.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> found = hidden_modes(derivation)
+    >>> [(str(c.conditions[0]), c.kind, str(c.hidden_factor.element)) for c in found.cases]
+    [('a - b - 1', 'uncontrollable', 's + b + 1')]
     """
     structure = find_zeros(derivation, output, input, stage)
     outputs, inputs = channel_positions(derivation, output, input)
@@ -97,12 +115,18 @@ class _CaseBook:
         self, chain: ConditionChain, blocks: Blocks, known: HiddenParts, sides: Sequence[str]
     ) -> None:
         """Look at every candidate condition beyond those of the chain."""
+        if not chain.ring.letters:
+            return
         wanted: dict[str, _Candidate] = {}
         for side in sides:
             self.stage(f"conditions of the {side}s")
             flipped = blocks if side == "input" else blocks.transposed()
             generic = known.input if side == "input" else known.output
-            found = candidate_conditions(flipped, generic, 1 if chain.images else 2)
+            try:
+                found = candidate_conditions(flipped, generic, 1 if chain.images else 2)
+            except UndecidedError:
+                self._gap(f"the equations under which a mode hides from the {side}s are too large")
+                continue
             if not found.found and any(any(row) for row in flipped.drive):
                 self._gap(f"no single {side} was found whose conditions do not vanish identically")
             for condition in (*found.alone, *found.together):

@@ -64,6 +64,22 @@ def influence(derivation: Derivation, output: str | None = None, input: str | No
     """The influence of every letter on the plant, or on the channels of one output or input.
 
     Errors: KeyError for a name that is no output or input.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> [(x.parameter, x.moves_zeros, x.moves_poles, x.scales_gain) for x in influence(derivation).letters]
+    [('a', False, True, False), ('b', True, True, False)]
     """
     ring = derivation.ring
     zeros = target(derivation, output, input)

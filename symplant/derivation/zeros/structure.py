@@ -64,6 +64,23 @@ def find_zeros(
     """All kinds of zeros and poles of the plant, or of the part seen from one output or input.
 
     Errors: KeyError for a name that is no output or input.
+
+    >>> from symplant.derivation.derive import derive
+    >>> from symplant.reading.plant_file import read_plant_text
+    >>> text = '''
+    ... format = 1
+    ... [parameters]
+    ... a = { sign = "positive", nominal = 3 }
+    ... b = { sign = "positive", nominal = 2 }
+    ... [matrices]
+    ... A = [["-a", "1"], ["0", "-b"]]
+    ... B = [["1"], ["1"]]
+    ... C = [["1", "0"]]
+    ... '''
+    >>> derivation = derive(read_plant_text(text))
+    >>> found = find_zeros(derivation)
+    >>> found.invariant.polynomial.element, found.normal_rank.value, found.infinite_zeros
+    (s + b + 1, 1, (1,))
     """
     outputs, inputs = channel_positions(derivation, output, input)
     blocks = Blocks.of(derivation.pencil, outputs, inputs)
