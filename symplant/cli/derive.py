@@ -21,6 +21,8 @@ if TYPE_CHECKING:
     from symplant.cli.budget import Channel
     from symplant.derivation.derive import Channel as Finding
     from symplant.derivation.derive import Scaled
+    from symplant.face.work import Derived
+    from symplant.writing.fragments import Fragment
     from symplant.writing.notation import Notation
 
 __all__ = ["derive"]
@@ -61,7 +63,8 @@ def derive(
         elif as_latex:
             from symplant.writing.fragments import derive_fragment
 
-            channel.out(derive_fragment(derived.derivation))
+            fragment = derive_fragment(derived.derivation)
+            return give_fragment(channel, fragment, derived)
         else:
             from symplant.writing.derive_page import derive_page
 
@@ -70,6 +73,16 @@ def derive(
         return 0 if derived.passed else 1
 
     sys.exit(session.run(work))
+
+
+def give_fragment(channel: Channel, fragment: Fragment, derived: Derived) -> int:
+    """Give LaTeX that has been read back; the exit status.  Failed checks are said on standard error."""
+    failed = [c for c in derived.checks if not c.passed]
+    failed += [c for c in fragment.read_back(derived.substitution.points) if not c.passed]
+    for check in failed:
+        channel.err(f"CHECK FAILED, do not use this: {check.what}: {check.method}: {check.detail}\n")
+    channel.out(fragment.text)
+    return 1 if failed else 0
 
 
 class Keeper:

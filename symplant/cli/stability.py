@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 import click
 
-from symplant.cli.derive import Keeper
+from symplant.cli.derive import Keeper, give_fragment
 from symplant.cli.session import (
     Session,
     dump,
@@ -77,7 +77,7 @@ def stability(
         elif as_latex:
             from symplant.writing.fragments import stability_fragment
 
-            channel.out(stability_fragment(found.finding, model))
+            return give_fragment(channel, stability_fragment(found.finding, model), found.derived)
         else:
             from symplant.writing.stability_page import stability_page
 

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 from symplant.algebra.text import element_text, factored_text, polynomial_text, ratio_text
 from symplant.algebra.verdict import Check
+from symplant.errors import CheckError
 
 if TYPE_CHECKING:
     from symplant.algebra.polynomial import Polynomial
@@ -17,6 +18,7 @@ if TYPE_CHECKING:
     from symplant.derivation.stability import Condition, Crossing
     from symplant.face.work import Derived, Stabilised
     from symplant.plant.model import Model
+    from symplant.writing.fragments import Fragment
     from symplant.writing.notation import Notation
 
 __all__ = ["ChannelView", "DerivationResult", "PolynomialView", "StabilityResult"]
@@ -165,10 +167,10 @@ class DerivationResult:
         return _json(self.answer())
 
     def latex(self) -> str:
-        """Displayed LaTeX formulas, to be pasted or \\input."""
+        """Displayed LaTeX formulas, to be pasted or \\input; CheckError if they do not read back."""
         from symplant.writing.fragments import derive_fragment
 
-        return derive_fragment(self._derived.derivation)
+        return _checked(derive_fragment(self._derived.derivation), self._derived)
 
     def _repr_latex_(self) -> str:
         return self.characteristic_polynomial._repr_latex_()
@@ -251,10 +253,11 @@ class StabilityResult:
         return _json(self.answer())
 
     def latex(self) -> str:
-        """Displayed LaTeX formulas, to be pasted or \\input."""
+        """Displayed LaTeX formulas, to be pasted or \\input; CheckError if they do not read back."""
         from symplant.writing.fragments import stability_fragment
 
-        return stability_fragment(self._stabilised.finding, self._writing.model)
+        fragment = stability_fragment(self._stabilised.finding, self._writing.model)
+        return _checked(fragment, self._stabilised.derived)
 
     def _repr_latex_(self) -> str:
         return self.latex()
@@ -267,3 +270,10 @@ class StabilityResult:
 
 def _json(answer: dict[str, Any]) -> str:
     return json.dumps(answer, indent=2, ensure_ascii=False) + "\n"
+
+
+def _checked(fragment: Fragment, derived: Derived) -> str:
+    failed = [check for check in fragment.read_back(derived.substitution.points) if not check.passed]
+    if failed:
+        raise CheckError(tuple(failed))
+    return fragment.text

@@ -2,23 +2,40 @@ r"""LaTeX to paste or \input: the formulas of an answer as displays with stable 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from symplant.algebra.verdict import Check
+from symplant.checking.readback import read_back
 from symplant.writing.printing import Printer
 from symplant.writing.report_results import channel_sections, characteristic, zero_section
 from symplant.writing.report_stability import stability_section
 
 if TYPE_CHECKING:
+    from symplant.checking.point import Point
     from symplant.derivation.derive import Derivation
     from symplant.derivation.stability import StabilityFinding
     from symplant.plant.model import Model
 
-__all__ = ["derive_fragment", "stability_fragment"]
+__all__ = ["Fragment", "derive_fragment", "stability_fragment"]
 
-HEAD = "% needs amsmath; the formulas are those of symplant"
+HEAD = "% needs amsmath; every formula was read back from this text and compared with what was derived"
 
 
-def derive_fragment(derivation: Derivation) -> str:
+@dataclass(frozen=True)
+class Fragment:
+    """A piece of LaTeX and the printer that wrote its formulas."""
+
+    text: str
+    printer: Printer
+
+    def read_back(self, points: Sequence[Point]) -> list[Check]:
+        """Checks of all its formulas at the points of the exact substitution."""
+        return read_back(self.printer.printed, self.printer.spelling.inverse, points)
+
+
+def derive_fragment(derivation: Derivation) -> Fragment:
     """Characteristic polynomial, channels and zero polynomial."""
     printer = Printer(derivation.model, derivation.ring)
     display, note = characteristic(derivation, printer)
@@ -26,10 +43,10 @@ def derive_fragment(derivation: Derivation) -> str:
     for section in channel_sections(derivation, printer):
         parts += [rf"\paragraph{{{section['heading']}}}", section["body"]]
     parts += [r"\paragraph{Zero polynomial}", zero_section(derivation, printer)]
-    return "\n\n".join(parts) + "\n"
+    return Fragment("\n\n".join(parts) + "\n", printer)
 
 
-def stability_fragment(finding: StabilityFinding, model: Model) -> str:
+def stability_fragment(finding: StabilityFinding, model: Model) -> Fragment:
     """Verdict, conditions and crossings."""
     printer = Printer(model, finding.polynomial.ring)
-    return f"{HEAD}\n\n{stability_section(finding, printer)}\n"
+    return Fragment(f"{HEAD}\n\n{stability_section(finding, printer)}\n", printer)
