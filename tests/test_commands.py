@@ -115,14 +115,26 @@ def test_bad_input_is_named_with_its_place(name, tmp_path):
     old, new, place, reason = FAULTS[name]
     assert old in GOOD
     path = plant(tmp_path, GOOD.replace(old, new))
-    out = tmp_path / "out"
-    for arguments in (["derive", path], ["report", path, "-o", out]):
-        done = run(*arguments)
-        assert done.returncode == 2 and done.stdout == ""
-        assert place in done.stderr and reason in done.stderr and "Traceback" not in done.stderr
-    assert not out.exists()
+    done = run("derive", path)
+    assert done.returncode == 2 and done.stdout == ""
+    assert place in done.stderr and reason in done.stderr and "Traceback" not in done.stderr
     answer = json.loads(run("derive", path, "--json").stdout)
     assert any(place.split(",")[0] in f"{fault['place']} {fault['file']}" for fault in answer["faults"])
+
+
+@pytest.mark.parametrize("name", ["undeclared letter", "division by zero"])
+def test_bad_input_writes_nothing(name, tmp_path):
+    old, new, place, _ = FAULTS[name]
+    out = tmp_path / "out"
+    done = run("report", plant(tmp_path, GOOD.replace(old, new)), "-o", out)
+    assert done.returncode == 2 and place in done.stderr and not out.exists()
+    assert [item.name for item in tmp_path.iterdir()] == ["plant.toml"]
+
+
+def test_a_report_on_a_file_is_a_fault(tmp_path):
+    done = run("report", plant(tmp_path, GOOD), "-o", tmp_path / "plant.toml")
+    assert done.returncode == 2 and "plant.toml" in done.stderr and done.stdout == ""
+    assert (tmp_path / "plant.toml").read_text(encoding="utf-8") == GOOD
 
 
 @pytest.mark.parametrize("data", [b"\x00\x01\x02", b"\xff\xfe\x00A", b"\x89PNG\r\n\x1a\n" * 50])
