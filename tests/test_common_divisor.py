@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from random import Random
+
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
@@ -9,6 +11,7 @@ from hypothesis import strategies as st
 from symplant.algebra.division import divides
 from symplant.algebra.expression import Node
 from symplant.algebra.functions import Setting, build_ring
+from symplant.algebra.modular_point import random_point
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element
 from symplant.derivation.derive import derive
@@ -117,3 +120,19 @@ def test_plants_with_many_functions_take_no_remainder_sequence(
     table = {letter: {"sign": "positive"} for letter in LETTERS}
     (channel,) = derive(model_from_arguments(A, B, C, E=E, parameters=table)).channels
     assert channel.common_factor.degree == 0
+
+
+def test_point_modulo_a_prime_in_spite_of_many_roots() -> None:
+    # Drawn all at once, fourteen roots would exist once in sixteen thousand draws.
+    texts = [f"{f}({a})" for f in ("sin", "sinh") for a in LETTERS] + [
+        f"sqrt({a} + {k})" for a in LETTERS for k in (0, 1)
+    ]
+    texts += ["sqrt(2)", "sqrt(3 + sqrt(2))"]
+    ring = build_ring("s", LETTERS, {text: read_arithmetic(text, LETTERS) for text in texts}).ring
+    point = random_point(ring, Random(1))
+    related = [function for function in ring.functions if function.square]
+    assert len(related) == 14
+    for function in related:
+        assert function.square is not None
+        relation = ring.gen(function.key) ** 2 - ring.element(*function.square)
+        assert not point.image(relation)

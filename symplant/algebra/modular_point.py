@@ -20,8 +20,11 @@ if TYPE_CHECKING:
 __all__ = ["Image", "ModularPoint", "elimination_pivots", "field_roots", "random_point"]
 
 Image: TypeAlias = "_nmod_poly"
-#: Draws after which a ring counts as having no point: each root has one chance in two at every draw.
+#: Draws after which a ring counts as having no point: the root of a number that no letter can change
+#: has one chance in two at every draw.
 ATTEMPTS = 4096
+#: Draws of the letters under one root until it exists: it has one chance in two each time.
+_REDRAWS = 64
 
 
 class ModularPoint:
@@ -78,7 +81,7 @@ def random_point(ring: Ring, random: Random) -> ModularPoint:
     for _ in range(ATTEMPTS):
         prime = _random_prime(random)
         values = {letter: random.randrange(1, prime) for letter in ring.letters}
-        if all(_assign(ring, function.key, values, prime, random) for function in ring.functions):
+        if _assign_functions(ring, values, prime, random):
             return ModularPoint(ring, prime, values)
     raise ArithmeticError("no point of the ring modulo a prime was found")
 
@@ -122,22 +125,39 @@ def _random_prime(random: Random) -> int:
             return candidate
 
 
-def _assign(ring: Ring, key: str, values: dict[str, int], prime: int, random: Random) -> bool:
-    """Give a function a value; False if its square is no square in the field."""
-    function = next(f for f in ring.functions if f.key == key)
-    if function.square is None:
-        values[key] = random.randrange(1, prime)
-        return True
-    names, terms = function.square
-    square = 0
+def _assign_functions(ring: Ring, values: dict[str, int], prime: int, random: Random) -> bool:
+    """Give the functions values; False if the square of one is no square in the field.
+
+    What a square depends on is drawn again until it is one, unless an earlier square depends on it.
+    """
+    settled: set[str] = set()
+    for function in ring.functions:
+        if function.square is None:
+            values[function.key] = random.randrange(1, prime)
+            continue
+        names, terms = function.square
+        used = [name for place, name in enumerate(names) if any(exponents[place] for exponents in terms)]
+        loose = [name for name in used if name not in settled]
+        for _ in range(_REDRAWS):
+            roots = field_roots(nmod_poly([-_square(names, terms, values, prime), 0, 1], prime))
+            if roots or not loose:
+                break
+            values.update({name: random.randrange(1, prime) for name in loose})
+        if not roots:
+            return False
+        values[function.key] = random.choice(roots)
+        settled.update(used, (function.key,))
+    return True
+
+
+def _square(
+    names: Sequence[str], terms: Mapping[tuple[int, ...], int], values: Mapping[str, int], prime: int
+) -> int:
+    total = 0
     for exponents, coefficient in terms.items():
         number = coefficient
         for name, exponent in zip(names, exponents, strict=True):
             if exponent:
                 number = number * pow(values[name], exponent, prime) % prime
-        square += number
-    square %= prime
-    roots = field_roots(nmod_poly([-square, 0, 1], prime))
-    if roots:
-        values[key] = random.choice(roots)
-    return bool(roots)
+        total += number
+    return total % prime
