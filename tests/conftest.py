@@ -1,0 +1,6 @@
+"""Modules that several test files share lie beside them."""
+
+import sys
+from pathlib import Path
+
+sys.path.insert(0, str(Path(__file__).parent))
