@@ -21,6 +21,7 @@ from symplant.algebra.decide_factors import Radical, radical
 from symplant.algebra.decide_means import positive_by_means
 from symplant.algebra.decide_search import find_sign, letters_in
 from symplant.algebra.decide_single import cells
+from symplant.algebra.effort import NORMAL, Effort
 from symplant.algebra.points import centre, points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import pattern_sign
@@ -28,7 +29,7 @@ from symplant.algebra.verdict import Verdict
 
 __all__ = ["Decision", "decide_positive", "over_box"]
 
-QUICK, LONG = 48, 1500
+QUICK = 48
 
 
 @dataclass(frozen=True)
@@ -58,11 +59,13 @@ def decide_positive(
     *,
     nominal: Mapping[str, Fraction] | None = None,
     nonzero: Sequence[Element] = (),
-    effort: int = LONG,
+    effort: int | None = None,
+    bounds: Effort = NORMAL,
 ) -> Decision:
     """Decide `element` > 0 over the box (default: the ring's), points with a zero of `nonzero` left out.
 
-    `nominal` steers the search; `effort` is the number of points of the long search.
+    `nominal` steers the search; `bounds` says how much work each rung may take, and `effort`
+    another number of points of the long search.
 
     >>> from symplant.algebra.box import Interval
     >>> ring = Ring("s", ("K",), Box({"K": Interval(declared=Sign.POSITIVE)}))
@@ -81,31 +84,31 @@ def decide_positive(
     settled = _by_pattern(ring, kernel, nominal)
     if settled is not None:
         return settled
-    point = find_sign(ring, kernel.element, (-1, 0), nominal, nonzero, QUICK)
+    point = find_sign(ring, kernel.element, (-1, 0), nominal, nonzero, QUICK, bounds)
     if point is not None:
         return Decision(Verdict.REFUTED, f"it is not positive at {_shown(point)}", point)
-    letters = letters_in(ring, [kernel.element])
+    letters, count = letters_in(ring, [kernel.element]), bounds.points if effort is None else effort
     if len(letters) == 1 and ring.used([kernel.element]) == set(letters):
         return _one_letter(ring, kernel.element, letters[0], nonzero)
-    reason = proved_positive(ring, kernel)
+    reason = proved_positive(ring, kernel, bounds)
     if reason:
         return Decision(Verdict.PROVED, reason)
-    point = find_sign(ring, kernel.element, (-1, 0), nominal, nonzero, effort)
+    point = find_sign(ring, kernel.element, (-1, 0), nominal, nonzero, count, bounds)
     if point is not None:
         return Decision(Verdict.REFUTED, f"it is not positive at {_shown(point)}", point)
     return Decision(
         Verdict.UNDECIDED,
         "signs of terms and factors, collecting, coefficients over parts of the box and means did not prove "
-        f"it, and none of {effort} points refuted it",
+        f"it, and none of {bounds.sample(len(kernel.element), count)} points refuted it",
     )
 
 
-def proved_positive(ring: Ring, kernel: Radical) -> str:
+def proved_positive(ring: Ring, kernel: Radical, bounds: Effort = NORMAL) -> str:
     """Why the element of a radical is positive, by the rungs that need no search; "" if not proved."""
     if len(kernel.factors) > 1:
         sign, reasons = kernel.sign, []
         for factor, exponent in kernel.factors:
-            direction, reason = _factor_sign(ring, factor)
+            direction, reason = _factor_sign(ring, factor, bounds)
             if not direction:
                 break
             sign *= direction**exponent
@@ -114,24 +117,26 @@ def proved_positive(ring: Ring, kernel: Radical) -> str:
             return "; ".join(dict.fromkeys(reasons)) if sign > 0 else ""
         if any(exponent % 2 == 0 for _, exponent in kernel.factors):
             return ""
-    return _proof(ring, kernel.element)
+    return _proof(ring, kernel.element, bounds)
 
 
-def _factor_sign(ring: Ring, factor: Element) -> tuple[int, str]:
+def _factor_sign(ring: Ring, factor: Element, bounds: Effort) -> tuple[int, str]:
     for direction in (1, -1):
-        reason = _proof(ring, direction * factor)
+        reason = _proof(ring, direction * factor, bounds)
         if reason:
             return direction, reason
     return 0, ""
 
 
-def _proof(ring: Ring, element: Element) -> str:
+def _proof(ring: Ring, element: Element, bounds: Effort) -> str:
     if pattern_sign(ring, element) is Sign.POSITIVE:
         return "all its terms are positive"
     sign, reason = collected_sign(ring, element) if len(element) <= 500 else (Sign.REAL, "")
     if sign is Sign.POSITIVE:
         return reason
-    return positive_by_bounds(ring, element) or positive_by_means(ring, element)
+    return positive_by_bounds(ring, element, bounds.boxes, bounds.coefficients) or positive_by_means(
+        ring, element, bounds.pairs
+    )
 
 
 def _by_pattern(ring: Ring, kernel: Radical, nominal: Mapping[str, Fraction]) -> Decision | None:

@@ -31,7 +31,7 @@ class _Pair:
     ratio: Fraction
 
 
-def positive_by_means(ring: Ring, element: Element) -> str:
+def positive_by_means(ring: Ring, element: Element, most: int = LARGEST_PAIRS) -> str:
     """Why the element is positive in the box, or "" if no certificate was found.
 
     >>> from symplant.algebra.box import Box, Interval
@@ -44,7 +44,7 @@ def positive_by_means(ring: Ring, element: Element) -> str:
     positive, negative, strict = _sorted_terms(ring, element)
     if not negative or not positive or len(positive) + len(negative) > LARGEST_TERMS:
         return ""
-    pairs = _pairs(positive, negative)
+    pairs = _pairs(positive, negative, most)
     if not pairs or {pair.target for pair in pairs} != set(range(len(negative))):
         return ""
     weights = _weights(pairs, list(positive.values()), list(negative.values()))
@@ -75,7 +75,7 @@ def _sorted_terms(
     return positive, negative, strict
 
 
-def _pairs(positive: dict[Exponents, int], negative: dict[Exponents, int]) -> list[_Pair]:
+def _pairs(positive: dict[Exponents, int], negative: dict[Exponents, int], most: int) -> list[_Pair]:
     index = {exponents: i for i, exponents in enumerate(positive)}
     pairs: list[_Pair] = []
     for target, middle in enumerate(negative):
@@ -83,7 +83,7 @@ def _pairs(positive: dict[Exponents, int], negative: dict[Exponents, int]) -> li
             other = index.get(tuple(2 * m - e for m, e in zip(middle, exponents, strict=True)))
             if other is not None and other > i:
                 pairs += [_Pair(i, other, target, ratio) for ratio in RATIOS]
-        if len(pairs) > LARGEST_PAIRS:
+        if len(pairs) > most:
             return []
     return pairs
 

@@ -6,6 +6,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
+from symplant.algebra.effort import NORMAL, Effort
 from symplant.algebra.enclosure import certified_sign, generator_balls, working_precision
 from symplant.algebra.expression import names_in
 from symplant.algebra.points import points
@@ -39,6 +40,10 @@ def respects(ring: Ring, nonzero: Iterable[Element], point: Mapping[str, Fractio
     )
 
 
+#: Most values of terms held at one time.
+BLOCK = 2_000_000
+
+
 class SignTable:
     """Signs of several elements at many points at once, in floating point: a guide, never a proof."""
 
@@ -66,13 +71,10 @@ class SignTable:
         result = np.zeros((len(sample), len(self.compiled)), dtype=int)
         with np.errstate(all="ignore"):
             for column, (values, exponents) in enumerate(self.compiled):
-                terms = np.broadcast_to(values, (len(sample), len(values))).copy()
-                for i in range(len(self.keys)):
-                    if exponents[:, i].any():
-                        terms *= bases[:, i : i + 1] ** exponents[:, i]
-                total, size = terms.sum(axis=1), np.abs(terms).sum(axis=1)
-                sure = np.isfinite(total) & (np.abs(total) > 1e-9 * size)
-                result[:, column] = np.where(sure, np.sign(total), 0)
+                step = max(1, BLOCK // max(len(values), 1))
+                for start in range(0, len(sample), step):
+                    part = slice(start, start + step)
+                    result[part, column] = _block_signs(bases[part], values, exponents)
         return result
 
     def _bases(self, point: Mapping[str, Fraction]) -> list[float]:
@@ -87,6 +89,22 @@ class SignTable:
             return [float("nan")] * len(self.keys)
 
 
+def _block_signs(
+    bases: np.ndarray[Any, Any], values: np.ndarray[Any, Any], exponents: np.ndarray[Any, Any]
+) -> np.ndarray[Any, Any]:
+    import numpy as np
+
+    terms = np.broadcast_to(values, (len(bases), len(values))).copy()
+    for i in range(exponents.shape[1]):
+        highest = int(exponents[:, i].max(initial=0))
+        if highest:
+            # Powers are looked up: raising every term by itself is ten times slower.
+            terms *= (bases[:, i : i + 1] ** np.arange(highest + 1))[:, exponents[:, i]]
+    total, size = terms.sum(axis=1), np.abs(terms).sum(axis=1)
+    sure = np.isfinite(total) & (np.abs(total) > 1e-9 * size)
+    return np.where(sure, np.sign(total), 0)
+
+
 def find_sign(
     ring: Ring,
     element: Element,
@@ -94,21 +112,26 @@ def find_sign(
     nominal: Mapping[str, Fraction],
     nonzero: Sequence[Element] = (),
     count: int = 64,
+    effort: Effort = NORMAL,
 ) -> dict[str, Fraction] | None:
     """A point of the ring's box where the element certainly has one of the wanted signs.
+
+    At most `count` points are looked at, fewer where the element is so long that `effort` bounds them.
 
     >>> ring = Ring("s", ("a",))
     >>> find_sign(ring, ring.gen("a") ** 2 - 3, (-1,), {})
     {'a': Fraction(1, 1)}
     """
     letters = letters_in(ring, [element])
-    sample = list(points(ring.box, letters, nominal, count))
+    sample = list(points(ring.box, letters, nominal, min(count, effort.sample(len(element), count))))
     signs = SignTable(ring, [element]).signs(sample)[:, 0]
+    tries = max(4, effort.exact_terms // max(len(element), 1))
     for point, sign in zip(sample, signs, strict=True):
-        if (
-            (sign in wanted or not sign)
-            and certified_sign(ring, element, point) in wanted
-            and respects(ring, nonzero, point)
-        ):
+        if sign and sign not in wanted:
+            continue
+        if not tries:
+            break
+        tries -= 1
+        if certified_sign(ring, element, point) in wanted and respects(ring, nonzero, point):
             return point
     return None

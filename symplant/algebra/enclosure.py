@@ -110,13 +110,21 @@ def certified_sign(ring: Ring, element: Element, point: Mapping[str, Fraction]) 
     element = ring.reduce(element)
     if not element:
         return 0
-    used = ring.used([element])
-    if used <= set(ring.letters):
-        exact = ring.value(element, point)
+    # Only the sign matters, so the common denominator is left out.
+    parts, _ = ring.parted(element, point)
+    used = {ring.keys[place] for key in parts for place, _ in key}
+    if not used:
+        exact = parts.get((), 0)
         return (exact > 0) - (exact < 0)
     for bits in PRECISIONS:
         with working_precision(bits):
-            value = ball_value(ring, element, generator_balls(ring, point, used))
+            balls = generator_balls(ring, point, used)
+            value = arb(0)
+            for key, number in parts.items():
+                term = arb(number)
+                for place, exponent in key:
+                    term = term * balls[ring.keys[place]] ** exponent
+                value = value + term
             if not value.is_finite():
                 return None  # the function is not defined here
             if value > 0:

@@ -219,12 +219,34 @@ class Ring:
 
     def value(self, element: Element, point: Mapping[str, Fraction]) -> Fraction:
         """The exact value of an element at a rational point that names every generator it uses."""
-        total = Fraction(0)
-        places = [(i, point[key]) for i, key in enumerate(self.keys) if key in point]
-        for exponents, coefficient in element.terms():
-            value = Fraction(int(coefficient))
-            for place, base in places:
-                if exponents[place]:
-                    value *= base ** int(exponents[place])
-            total += value
-        return total
+        parts, scale = self.parted(element, point)
+        return Fraction(sum(parts.values()), scale)
+
+    def parted(
+        self, element: Element, point: Mapping[str, Fraction]
+    ) -> tuple[dict[tuple[tuple[int, int], ...], int], int]:
+        """Values put in for letters, the rest left: (place, exponent) pairs to integers, over one integer.
+
+        >>> ring = Ring("s", ("m", "k"))
+        >>> ring.parted(ring.gen("m") * ring.gen("s") + ring.gen("m"), {"m": Fraction(1, 2)})
+        ({((0, 1),): 1, (): 1}, 2)
+        """
+        tables, rest, scale = [], [], 1
+        for place, degree in enumerate(element.degrees()):
+            if degree <= 0:
+                continue
+            value = point.get(self.keys[place])
+            if value is None:
+                rest.append(place)
+                continue
+            p, q = value.numerator, value.denominator
+            tables.append((place, [p**e * q ** (int(degree) - e) for e in range(int(degree) + 1)]))
+            scale *= q ** int(degree)
+        parts: dict[tuple[tuple[int, int], ...], int] = {}
+        for exponents, coefficient in element.to_dict().items():
+            number = int(coefficient)
+            for place, table in tables:
+                number *= table[exponents[place]]
+            key = tuple((place, int(exponents[place])) for place in rest if exponents[place])
+            parts[key] = parts.get(key, 0) + number
+        return parts, scale

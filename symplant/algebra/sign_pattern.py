@@ -24,7 +24,9 @@ def pattern_sign(ring: Ring, element: Element) -> Sign:
     if not element:
         return Sign.ZERO
     total = Sign.ZERO
-    for exponents, value in element.terms():
+    # One term at a time: most long elements are settled by the first few.
+    for number in range(len(element)):
+        exponents, value = element.monomial(number), element.coefficient(number)
         sign = Sign.POSITIVE if int(value) > 0 else Sign.NEGATIVE
         for place, exponent in enumerate(exponents):
             if exponent:

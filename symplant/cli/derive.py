@@ -21,6 +21,7 @@ if TYPE_CHECKING:
     from symplant.cli.budget import Channel
     from symplant.derivation.derive import Channel as Finding
     from symplant.derivation.derive import Scaled
+    from symplant.derivation.stability import SettledCondition
     from symplant.face.work import Derived
     from symplant.writing.fragments import Fragment
     from symplant.writing.notation import Notation
@@ -94,12 +95,18 @@ class Keeper:
         self.channel, self.notation = channel, notation
         self.as_json, self.width, self.unicode = as_json, width, unicode
 
-    def found(self, finding: Scaled | Finding) -> None:
+    def found(self, finding: Scaled | Finding | SettledCondition) -> None:
         """Keep one finding."""
+        from symplant.derivation.stability import SettledCondition
+
         if self.as_json:
             from symplant.writing.answer import finding_answer
 
             self.channel.keep(dump(finding_answer(finding, self.notation.latex)))
+        elif isinstance(finding, SettledCondition):
+            from symplant.writing.stability_page import settled_page
+
+            self.channel.keep(settled_page(finding, self.width, self.unicode).plain())
         else:
             from symplant.writing.derive_page import finding_page
 

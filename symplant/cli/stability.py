@@ -36,6 +36,13 @@ __all__ = ["stability"]
 @click.option(
     "--set", "fixed", multiple=True, metavar="NAME=VALUE", help="With --along: another value than nominal."
 )
+@click.option(
+    "--effort",
+    type=click.Choice(["low", "normal", "high"]),
+    default="normal",
+    show_default=True,
+    help="How much work each condition may take before it is left undecided.",
+)
 @click.option("--routh", is_flag=True, help="Show the Routh array.")
 def stability(
     plant: Path,
@@ -43,6 +50,7 @@ def stability(
     as_latex: bool,
     along: str | None,
     fixed: tuple[str, ...],
+    effort: str,
     routh: bool,
     max_seconds: float | None,
     max_memory: int | None,
@@ -69,7 +77,9 @@ def stability(
             values = _values(model, along, fixed)
             channel.plan(derive_plan(model, stability=True))
             keeper = Keeper(channel, notation, as_json, width, unicode)
-            found = stability_and_check(model, opinion, channel.stage, keeper.found, along, values)
+            found = stability_and_check(
+                model, opinion, channel.stage, keeper.found, along, values, effort, channel.plan
+            )
         if as_json:
             from symplant.writing.answer import stability_answer
 

@@ -13,7 +13,7 @@ from symplant.derivation.derive import Channel, Derivation, Scaled, derive, deri
 if TYPE_CHECKING:
     from symplant.checking.second_opinion import SecondOpinion
     from symplant.checking.substitution import Substitution
-    from symplant.derivation.stability import StabilityFinding
+    from symplant.derivation.stability import SettledCondition, StabilityFinding
     from symplant.plant.model import Model
 
 __all__ = ["Derived", "Stabilised", "derive_and_check", "derive_plan", "stability_and_check"]
@@ -93,13 +93,24 @@ def stability_and_check(
     model: Model,
     opinion: SecondOpinion | None = None,
     stage: Stage = lambda name: None,
-    found: Callable[[Scaled | Channel], None] = lambda finding: None,
+    found: Callable[[Scaled | Channel | SettledCondition], None] = lambda finding: None,
     along: str | None = None,
     fixed: Mapping[str, Fraction] | None = None,
+    effort: str = "normal",
+    plan: Callable[[list[str]], None] = lambda names: None,
 ) -> Stabilised:
     """Derive and check, then reduce the stability conditions; see `derivation.stability.stability`."""
+    from symplant.algebra.effort import EFFORTS
     from symplant.derivation.stability import stability
 
     derived = derive_and_check(model, opinion, stage, found)
-    stage(CONDITIONS)
-    return Stabilised(derived, stability(derived.derivation, along=along, fixed=fixed or {}))
+    finding = stability(
+        derived.derivation,
+        along=along,
+        fixed=fixed or {},
+        stage=stage,
+        effort=EFFORTS[effort],
+        found=found,
+        plan=lambda names: plan([*derive_plan(model), *names]),
+    )
+    return Stabilised(derived, finding)

@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from symplant.algebra.ratio import Ratio
     from symplant.algebra.ring import Element, Ring
     from symplant.derivation.derive import Channel, Derivation, Scaled
-    from symplant.derivation.stability.finding import Condition, Endpoint, StabilityFinding
+    from symplant.derivation.stability.finding import Condition, Endpoint, SettledCondition, StabilityFinding
     from symplant.errors import Fault
     from symplant.plant.model import Model
     from symplant.writing.report import WrittenReport
@@ -23,11 +23,18 @@ __all__ = [
     "FORMAT",
     "Answer",
     "check_rows",
+    "condition_answer",
+    "decimal_text",
     "derive_answer",
+    "endpoint_answer",
     "fault_answer",
     "finding_answer",
+    "head_answer",
     "polynomial_answer",
+    "ratio_answer",
+    "report_answer",
     "stability_answer",
+    "stability_finding_answer",
 ]
 
 #: Version of the shape of every answer.
@@ -88,7 +95,7 @@ def derive_answer(derivation: Derivation, checks: Sequence[Check], latex: Latex)
         return written[key]
 
     answer: Answer = {
-        **_head("derive", derivation.model),
+        **head_answer("derive", derivation.model),
         "characteristic_polynomial": {
             **poly(characteristic.polynomial),
             "multiplier": _multiplier(ring, characteristic.multiplier),
@@ -125,24 +132,32 @@ def stability_answer(
     finding: StabilityFinding, model: Model, checks: Sequence[Check], latex: Latex
 ) -> Answer:
     """The answer of `stability`."""
+    return {
+        **head_answer("stability", model),
+        **stability_finding_answer(finding, latex),
+        "checks": check_rows(checks),
+    }
+
+
+def stability_finding_answer(finding: StabilityFinding, latex: Latex) -> Answer:
+    """A stability finding by itself."""
     ring = finding.polynomial.ring
     return {
-        **_head("stability", model),
         "verdict": str(finding.verdict),
         "because": finding.because,
-        "conditions": [_condition(ring, condition, latex) for condition in finding.conditions],
+        "conditions": [condition_answer(ring, condition, latex) for condition in finding.conditions],
         "crossings": [
             {
                 "expression": factored_text(ring, crossing.element),
                 "at": crossing.at,
-                "frequency_squared": _ratio(crossing.frequency_squared),
+                "frequency_squared": ratio_answer(crossing.frequency_squared),
                 "detail": crossing.detail,
             }
             for crossing in finding.crossings
         ],
-        "marginal_conditions": [_condition(ring, c, latex) for c in finding.marginal_conditions],
+        "marginal_conditions": [condition_answer(ring, c, latex) for c in finding.marginal_conditions],
         "intervals": [
-            {"from": _endpoint(i.start), "to": _endpoint(i.end), "verdict": i.verdict}
+            {"from": endpoint_answer(i.start), "to": endpoint_answer(i.end), "verdict": i.verdict}
             for i in finding.intervals
         ],
         "along": finding.along,
@@ -150,7 +165,7 @@ def stability_answer(
             {
                 "where": factored_text(ring, case.where),
                 "verdict": case.finding.verdict,
-                "conditions": [_condition(ring, c, latex) for c in case.finding.conditions],
+                "conditions": [condition_answer(ring, c, latex) for c in case.finding.conditions],
             }
             for case in finding.special_cases
         ],
@@ -159,7 +174,6 @@ def stability_answer(
             for side, point in finding.witnesses.items()
         },
         "notes": list(finding.notes),
-        "checks": check_rows(checks),
     }
 
 
@@ -181,7 +195,8 @@ def fault_answer(command: str, faults: Sequence[Fault]) -> Answer:
     }
 
 
-def _condition(ring: Ring, condition: Condition, latex: Latex) -> Answer:
+def condition_answer(ring: Ring, condition: Condition, latex: Latex) -> Answer:
+    """One stability condition."""
     return {
         "expression": factored_text(ring, condition.element),
         "relation": condition.relation,
@@ -196,7 +211,7 @@ def _condition(ring: Ring, condition: Condition, latex: Latex) -> Answer:
     }
 
 
-def _endpoint(end: Endpoint | None) -> Answer | str | None:
+def endpoint_answer(end: Endpoint | None) -> Answer | str | None:
     """An exact end as text, another by two decimals that enclose it."""
     if end is None:
         return None
@@ -222,7 +237,8 @@ def decimal_text(value: Fraction) -> str:
     return f"{sign}{digits[:-places]}.{digits[-places:]}" if places else sign + digits
 
 
-def _head(command: str, model: Model) -> Mapping[str, Any]:
+def head_answer(command: str, model: Model) -> Mapping[str, Any]:
+    """What every answer begins with."""
     return {"format": FORMAT, "command": command, "plant": plant_answer(model)}
 
 
@@ -236,14 +252,18 @@ def _number(value: Fraction | None) -> str | None:
     return None if value is None else str(value)
 
 
-def _ratio(ratio: Ratio | None) -> str | None:
+def ratio_answer(ratio: Ratio | None) -> str | None:
+    """A ratio as text, None for none."""
     return None if ratio is None else ratio_text(ratio)
 
 
-def finding_answer(finding: Scaled | Channel, latex: Latex) -> Answer:
+def finding_answer(finding: Scaled | Channel | SettledCondition, latex: Latex) -> Answer:
     """One finding by itself, to be merged into the answer of work that was stopped."""
     from symplant.derivation.derive import Scaled
+    from symplant.derivation.stability.finding import SettledCondition
 
+    if isinstance(finding, SettledCondition):
+        return {"conditions": [condition_answer(finding.ring, finding.condition, latex)]}
     if isinstance(finding, Scaled):
         return {"characteristic_polynomial": polynomial_answer(finding.polynomial, latex)}
     return {
@@ -263,7 +283,7 @@ def finding_answer(finding: Scaled | Channel, latex: Latex) -> Answer:
 def report_answer(model: Model, written: WrittenReport, checks: Sequence[Check]) -> Answer:
     """What `report` wrote."""
     return {
-        **_head("report", model),
+        **head_answer("report", model),
         "main": str(written.main),
         "pdf": None if written.pdf is None else str(written.pdf),
         "note": written.note,

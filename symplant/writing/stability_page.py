@@ -11,6 +11,7 @@ from symplant.derivation.stability.finding import (
     Condition,
     Crossing,
     Endpoint,
+    SettledCondition,
     StabilityFinding,
     StabilityInterval,
 )
@@ -22,15 +23,19 @@ from symplant.writing.plain import PlainFormulas
 
 if TYPE_CHECKING:
     from symplant.algebra.ratio import Ratio
+    from symplant.algebra.ring import Element
     from symplant.derivation.stability.finding import Point
     from symplant.plant.model import Model
 
-__all__ = ["endpoint_text", "routh_rows", "stability_page"]
+__all__ = ["endpoint_text", "routh_rows", "settled_page", "stability_page"]
 
 SPECIAL = {
     "zero pivot": "zero pivot: the row was replaced by one that has a pivot and the same counts",
     "zero row": "zero row: replaced by the derivative of the auxiliary polynomial of the row above",
 }
+
+#: A condition of more terms is not spelled on the page, which nobody could read; the machine answer has it.
+LONGEST = 1500
 
 VERDICTS = {
     "stable": ("STABLE for every admissible value of the parameters", "good"),
@@ -73,6 +78,18 @@ def stability_page(
     return page
 
 
+def settled_page(settled: SettledCondition, width: int = 100, unicode: bool = True) -> Page:
+    """One condition by itself, for work that was stopped before the others were known."""
+    page, condition = Page(width), settled.condition
+    plain = PlainFormulas(settled.ring, width - 4, unicode)
+    if len(condition.element) > LONGEST:
+        page.add(f"({_too_long(condition.element)}) > 0")
+    else:
+        page.add(plain.condition(condition.element, condition.relation))
+    page.rows([("", f"{condition.name}: {condition.status}: {condition.because}")], ["quiet"], indent=4)
+    return page
+
+
 def endpoint_text(end: Endpoint | None, infinite: str) -> str:
     """An end of an interval: exact, or the digits that are certain."""
     if end is None:
@@ -109,6 +126,10 @@ class _Writer:
             self._condition(condition)
 
     def _condition(self, condition: Condition) -> None:
+        if len(condition.element) > LONGEST:
+            self.page.add(f"({_too_long(condition.element)}) > 0")
+            self.page.rows([("", f"{condition.name}: {condition.because}")], ["quiet"], indent=4)
+            return
         stated = self.plain.condition(condition.element, condition.relation)
         self.page.add(stated)
         for bound in condition.solved:
@@ -137,10 +158,12 @@ class _Writer:
             self._crossing(crossing)
 
     def _crossing(self, crossing: Crossing) -> None:
-        self.page.add(f"{self.plain.factored('', crossing.element)} = 0")
+        whole = crossing.element
+        left = f"({_too_long(whole)})" if len(whole) > LONGEST else self.plain.factored("", whole)
+        self.page.add(f"{left} = 0")
         self.page.add(crossing_words(crossing), "quiet", 4)
-        if crossing.frequency_squared is not None:
-            ratio = crossing.frequency_squared
+        ratio = crossing.frequency_squared
+        if ratio is not None and len(ratio.numerator) + len(ratio.denominator) <= LONGEST:
             name = "ω²" if self.unicode else "omega^2"
             self.page.add(
                 self.plain.ratio(f"at the frequency {name}", ratio.numerator, ratio.denominator), "", 4
@@ -197,6 +220,10 @@ class _Writer:
             self.page.heading("Notes")
             for note in self.finding.notes:
                 self.page.rows([("", note)], indent=0)
+
+
+def _too_long(element: Element) -> str:
+    return f"a polynomial of {len(element)} terms, spelled out by --json"
 
 
 def _values(point: Point) -> str:

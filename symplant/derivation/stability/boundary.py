@@ -57,7 +57,7 @@ def marginal_conditions(subject: Subject, stage: Callable[[str], None]) -> list[
     found = candidates(subject, subject.parts[number], number, tested, suffix)
     if len(images) > 1:
         # The leading coefficient is that of the product, so signs must be taken from it.
-        whole = Subject(together, False, subject.nonzero, subject.nominal)
+        whole = Subject(together, False, subject.nonzero, subject.nominal, effort=subject.effort)
         part = Part(together, 1, tested, False)
         found = candidates(whole, part, number, tested, suffix)
     return irredundant(subject, settle_all(subject, found, stage)[0])

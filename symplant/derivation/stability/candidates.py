@@ -41,6 +41,11 @@ class Candidate:
     event: str
     make: Callable[[], Element]
 
+    @property
+    def stage(self) -> str:
+        """How the work on it is called."""
+        return f"the sign of the {self.name}"
+
 
 @dataclass(frozen=True)
 class Leading:

@@ -19,6 +19,7 @@ __all__ = [
     "Crossing",
     "Endpoint",
     "Point",
+    "SettledCondition",
     "SpecialCase",
     "StabilityFinding",
     "StabilityInterval",
@@ -55,6 +56,17 @@ class Condition:
     name: str
     solved: tuple[Bound, ...] = ()
     relation: Literal[">"] = ">"
+
+
+@dataclass(frozen=True)
+class SettledCondition:
+    """A condition as it stands before the others are known; handed out while the work goes on.
+
+    Whether it follows from others (`implied`) is not yet asked.
+    """
+
+    ring: Ring
+    condition: Condition
 
 
 @dataclass(frozen=True)

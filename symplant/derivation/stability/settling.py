@@ -48,11 +48,13 @@ def settle_all(
     found: list[Candidate],
     stage: Callable[[str], None],
     argument: Callable[[], str] = lambda: "",
+    report: Callable[[Settled], None] = lambda settled: None,
 ) -> tuple[list[Settled], str]:
     """Settle candidates, those with the same radical as one; `argument` proves all of them if not "".
 
     The cheap rungs come first for all of them; only if something is left open is `argument` asked.
-    Its reason is returned too ("" where it was not needed or did not prove anything).
+    Its reason is returned too ("" where it was not needed or did not prove anything).  `report` is told
+    of each condition when it is settled.
     """
     rest: list[tuple[int, Candidate]] = []
     done: dict[int, Settled] = {}
@@ -61,6 +63,7 @@ def settle_all(
             settled = _cheaply(subject, candidate, candidate.make())
             if settled is not None:
                 done[place] = settled
+                report(settled)
                 continue
         rest.append((place, candidate))
     reason = argument() if rest and all(s.status == "always" for s in done.values()) else ""
@@ -69,10 +72,11 @@ def settle_all(
         for place, candidate in rest:
             if candidate.kind == "coefficient":
                 done[place] = Settled((candidate,), candidate.make(), "always", reason)
+                report(done[place])
         return [done[place] for place in sorted(done)], reason
     known: dict[str, int] = {}
     for place, candidate in rest:
-        stage(f"the sign of the {candidate.name}")
+        stage(candidate.stage)
         element = candidate.make()
         settled = _cheaply(subject, candidate, element)
         if settled is None:
@@ -91,6 +95,7 @@ def settle_all(
             known[str(kernel.element)] = place
             settled = settle(subject, candidate, element, kernel)
         done[place] = settled
+        report(settled)
     return [done[place] for place in sorted(done)], ""
 
 
@@ -120,14 +125,15 @@ def _plainly(element: Element) -> str:
 def settle(subject: Subject, candidate: Candidate, element: Element, kernel: Radical) -> Settled:
     """Settle one candidate by the whole sign ladder."""
     ring, nominal, nonzero = subject.ring, subject.nominal or {}, subject.nonzero
-    decision = decide_positive(ring, kernel.element, nominal=nominal, nonzero=nonzero)
+    effort = subject.effort
+    decision = decide_positive(ring, kernel.element, nominal=nominal, nonzero=nonzero, bounds=effort)
     if decision.verdict is Verdict.PROVED:
         return Settled((candidate,), element, "always", decision.because)
     if decision.verdict is Verdict.UNDECIDED:
         return Settled((candidate,), kernel.element, "undecided", decision.because)
-    holds = find_sign(ring, kernel.element, (1,), nominal, nonzero)
+    holds = find_sign(ring, kernel.element, (1,), nominal, nonzero, effort=effort)
     if holds is None:
-        opposite = decide_positive(ring, -kernel.element, nominal=nominal, nonzero=nonzero)
+        opposite = decide_positive(ring, -kernel.element, nominal=nominal, nonzero=nonzero, bounds=effort)
         if opposite.verdict is Verdict.PROVED:
             return Settled((candidate,), element, "never", f"minus it is positive: {opposite.because}", True)
         if kernel.sign < 0 and all(exponent == 2 for _, exponent in kernel.factors):

@@ -8,6 +8,7 @@ from typing import TypeAlias
 
 from symplant.algebra.box import Box, Interval
 from symplant.algebra.decide import over_box
+from symplant.algebra.effort import NORMAL, Effort
 from symplant.algebra.points import centre
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element
@@ -20,6 +21,7 @@ from symplant.derivation.stability.energy import energy_argument
 from symplant.derivation.stability.finding import (
     Condition,
     Point,
+    SettledCondition,
     SpecialCase,
     StabilityFinding,
     StabilityInterval,
@@ -27,7 +29,7 @@ from symplant.derivation.stability.finding import (
 from symplant.derivation.stability.fixing import fixed_model, values_along
 from symplant.derivation.stability.implication import reduced
 from symplant.derivation.stability.intervals import stability_intervals
-from symplant.derivation.stability.settling import settle_all
+from symplant.derivation.stability.settling import Settled, settle_all
 from symplant.derivation.stability.solving import condition_of
 from symplant.derivation.stability.subject import Subject, restricted, subject_of
 from symplant.derivation.stability.vanishing_leading import content_notes, lower_subject, vanishing_note
@@ -39,10 +41,15 @@ __all__ = ["stability", "stability_of"]
 Source: TypeAlias = Model | Pencil | Derivation
 #: How often a vanishing leading coefficient is followed by the next one.
 CASES = 2
+REDUCTION, WITNESSES = "what follows from what", "witnesses"
 
 
 def _quiet(name: str) -> None:
     """Report no stage."""
+
+
+def _unheard(finding: object) -> None:
+    """Hand out nothing before the end."""
 
 
 def stability(
@@ -51,13 +58,17 @@ def stability(
     along: str | None = None,
     fixed: Mapping[str, Fraction] | None = None,
     stage: Callable[[str], None] = _quiet,
+    effort: Effort = NORMAL,
+    found: Callable[[SettledCondition], None] = _unheard,
+    plan: Callable[[list[str]], None] = _unheard,
 ) -> StabilityFinding:
     """Stability of a plant over its parameter box.
 
     `along` asks for the exact intervals of one letter with all others at the values `fixed` or else
     nominal; the rest of the answer is about the whole box.  With one letter in all the intervals come
     by themselves.  Without `along`, letters in `fixed` have these values throughout.  `stage` is told
-    what is being worked on.
+    what is being worked on; `effort` bounds the work on each condition; `found` is handed each
+    condition when it is settled, and `plan` the stages to come when they are known.
 
     Errors: InputError for unknown letters, letters without nominal value, and singular pencils.
     """
@@ -72,12 +83,12 @@ def stability(
     ]
     if along is not None:
         others = values_along(along, model.letters, model.nominal, values)
-        line = subject_of(build_pencil(fixed_model(model, others)))
+        line = subject_of(build_pencil(fixed_model(model, others)), effort)
         values = {}
     if values or isinstance(source, Model):
-        subject = subject_of(build_pencil(fixed_model(model, values)))
+        subject = subject_of(build_pencil(fixed_model(model, values)), effort)
     else:
-        subject = subject_of(source.pencil if isinstance(source, Derivation) else source)
+        subject = subject_of(source.pencil if isinstance(source, Derivation) else source, effort)
     notes = []
     if model.E is not None:
         notes.append(
@@ -85,7 +96,7 @@ def stability(
         )
     if outside:
         notes.append(f"fixed outside its range: {', '.join(outside)}")
-    return _study(subject, along, line, values, stage, notes)
+    return _study(subject, along, line, values, stage, notes, 0, found, plan)
 
 
 def stability_of(
@@ -99,6 +110,9 @@ def stability_of(
     along: str | None = None,
     fixed: Mapping[str, Fraction] | None = None,
     stage: Callable[[str], None] = _quiet,
+    effort: Effort = NORMAL,
+    found: Callable[[SettledCondition], None] = _unheard,
+    plan: Callable[[list[str]], None] = _unheard,
 ) -> StabilityFinding:
     """Where all roots of a polynomial lie inside the boundary; used for zeros as well as poles.
 
@@ -119,14 +133,14 @@ def stability_of(
         raise ValueError("the zero polynomial has no roots to judge")
     fixed, nominal = dict(fixed or {}), dict(nominal or {})
     ring = polynomial.ring if box is None else over_box(polynomial.ring, box)
-    subject = Subject(Polynomial(ring, polynomial.element), discrete, tuple(nonzero), nominal, pencil)
+    subject = Subject(Polynomial(ring, polynomial.element), discrete, tuple(nonzero), nominal, pencil, effort)
     line = None
     if along is not None:
         line = restricted(subject, values_along(along, ring.letters, nominal, fixed))
         fixed = {}
     elif fixed:
         subject = restricted(subject, fixed)
-    return _study(subject, along, line, fixed, stage, [])
+    return _study(subject, along, line, fixed, stage, [], 0, found, plan)
 
 
 def _study(
@@ -137,6 +151,8 @@ def _study(
     stage: Callable[[str], None],
     notes: list[str],
     depth: int = 0,
+    tell: Callable[[SettledCondition], None] = _unheard,
+    plan: Callable[[list[str]], None] = _unheard,
 ) -> StabilityFinding:
     ring = subject.ring
     found: list[Candidate] = []
@@ -151,7 +167,13 @@ def _study(
     def argument() -> str:
         return energy_argument(subject.pencil) if subject.pencil is not None and not symmetric else ""
 
-    settled, proof = settle_all(subject, found, stage, argument)
+    def report(one: Settled) -> None:
+        if tell is not _unheard:
+            tell(SettledCondition(ring, condition_of(ring, one)))
+
+    plan([*(candidate.stage for candidate in found), REDUCTION, WITNESSES])
+    settled, proof = settle_all(subject, found, stage, argument, report)
+    stage(REDUCTION)
     ordinary = reduced(subject, settled)
     marginal = marginal_conditions(subject, stage) if symmetric else []
     if len(subject.letters) == 1 and line is None:

@@ -11,6 +11,7 @@ from symplant.algebra.bilinear import bilinear
 from symplant.algebra.decide_search import letters_in
 from symplant.algebra.determinant import determinant
 from symplant.algebra.division import factors_in_variable
+from symplant.algebra.effort import NORMAL, Effort
 from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.substitution import substituted
@@ -48,7 +49,8 @@ class Subject:
     """A polynomial in s, or in z if `discrete`, and what is known about its letters.
 
     `nonzero` are irreducible elements assumed not to vanish, `nominal` steers searches, `pencil`
-    serves to tell whether a multiple root on the boundary has a full set of eigenvectors.
+    serves to tell whether a multiple root on the boundary has a full set of eigenvectors, `effort`
+    bounds the work on each question.
     """
 
     polynomial: Polynomial
@@ -56,6 +58,7 @@ class Subject:
     nonzero: tuple[Element, ...] = ()
     nominal: Mapping[str, Fraction] | None = None
     pencil: Pencil | None = None
+    effort: Effort = NORMAL
 
     @property
     def ring(self) -> Ring:
@@ -92,7 +95,7 @@ class Subject:
         return bool(used - set(self.ring.letters) - {self.ring.variable})
 
 
-def subject_of(pencil: Pencil) -> Subject:
+def subject_of(pencil: Pencil, effort: Effort = NORMAL) -> Subject:
     """The characteristic polynomial of a pencil as the subject.
 
     Errors: InputError where it vanishes identically.
@@ -103,7 +106,7 @@ def subject_of(pencil: Pencil) -> Subject:
         reason = "the characteristic polynomial vanishes identically for the values given"
         raise InputError([Fault("matrices", reason, "the equations do not determine the states")])
     polynomial = Polynomial(ring, element)
-    return Subject(polynomial, pencil.model.discrete, pencil.divisors, pencil.model.nominal, pencil)
+    return Subject(polynomial, pencil.model.discrete, pencil.divisors, pencil.model.nominal, pencil, effort)
 
 
 def restricted(subject: Subject, values: Mapping[str, Fraction]) -> Subject:
@@ -130,6 +133,7 @@ def restricted(subject: Subject, values: Mapping[str, Fraction]) -> Subject:
         subject.discrete,
         tuple(e for e in nonzero if not e.is_constant()),
         subject.nominal,
+        effort=subject.effort,
     )
 
 

@@ -40,7 +40,8 @@ def lower_subject(subject: Subject) -> tuple[Element, Subject] | None:
     rest = Polynomial.of(ring, whole.element - whole.leading * s**whole.degree)
     if rest.is_zero:
         return None
-    lower = _on_zero(Subject(rest, subject.discrete, subject.nonzero, subject.nominal), vanishing)
+    without = Subject(rest, subject.discrete, subject.nonzero, subject.nominal, effort=subject.effort)
+    lower = _on_zero(without, vanishing)
     return None if lower.polynomial.is_zero else (vanishing, lower)
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from fractions import Fraction
-from itertools import islice
+from itertools import islice, product
 from math import comb
 from typing import Literal, TypeAlias
 
@@ -24,7 +24,10 @@ __all__ = ["PointVerdict", "classify", "counts_at", "edges_of", "find_point"]
 
 #: "axis": no root beyond the boundary, but some on it.
 PointVerdict: TypeAlias = Literal["stable", "unstable", "axis"]
-SAMPLE, LINES = 1500, 16
+#: Points that lines are drawn through.
+LINES = 16
+#: A condition with more terms does not steer the search: judging a point exactly is faster then.
+LONGEST = 5000
 
 
 def counts_at(subject: Subject, point: Mapping[str, Fraction]) -> RootCounts | None:
@@ -86,7 +89,11 @@ def _by_balls(subject: Subject, point: Mapping[str, Fraction]) -> PointVerdict |
         lead = certified_sign(ring, part.polynomial.leading, point)
         if not lead:
             return None
-        image = part.image
+        # With values for the letters only functions are left, and the determinants stay short.
+        (element,) = substituted(ring, [part.image.element], point)
+        image = Polynomial.of(ring, element)
+        if image.degree < part.image.degree:
+            return None
         elements = [*image.coefficients]
         if not subject.discrete:
             elements.pop()
@@ -107,9 +114,10 @@ def find_point(
 ) -> dict[str, Fraction] | None:
     """A point of the box with one of the wanted verdicts, as near to the middle as was found."""
     goal = set(wanted)
-    point = next(
-        (p for p in _suggested(subject, conditions, "stable" in goal) if classify(subject, p) in goal), None
-    )
+    short = [e for e in conditions if len(e) <= LONGEST]
+    tries = max(64, subject.effort.exact_terms // max(len(subject.polynomial.element), 1))
+    suggested = islice(_suggested(subject, short, "stable" in goal), tries)
+    point = next((p for p in suggested if classify(subject, p) in goal), None)
     if point is None:
         return None
     middle = _middle(subject, list(point))
@@ -139,7 +147,8 @@ def _suggested(
     """Points where floating point says that the conditions hold (or that one fails), then line searches."""
     letters = _letters(subject)
     box, nominal = subject.ring.box, subject.nominal or {}
-    sample = list(points(box, letters, nominal, SAMPLE if letters else 1))
+    effort, size = subject.effort, sum(len(e) for e in conditions)
+    sample = list(points(box, letters, nominal, effort.sample(size, effort.points) if letters else 1))
     table = SignTable(subject.ring, list(conditions))
     for start in (0, 64):
         part = sample[start : 64 if start == 0 else None]
@@ -156,17 +165,18 @@ def _suggested(
 def _on_lines(subject: Subject, bases: Sequence[dict[str, Fraction]]) -> Iterator[dict[str, Fraction]]:
     """One sample of every cell on lines through some points, parallel to the letters: exact."""
     ring = subject.ring
-    for base in islice(bases, LINES):
-        for letter in subject.letters:
-            others = {name: value for name, value in base.items() if name != letter}
-            edges: list[Element] = []
-            for part in subject.parts:
-                (element,) = substituted(ring, [part.image.element], others)
-                edges += edges_of(Polynomial.of(ring, element))
-            edges = [edge for edge in edges if edge]
-            found, _ = cells(ring, edges, letter, ring.box.intervals.get(letter, Interval()))
-            for cell in found:
-                yield {**base, letter: cell.sample}
+    for count, (base, letter) in enumerate(product(bases[:LINES], subject.letters)):
+        if count >= subject.effort.lines:
+            return
+        others = {name: value for name, value in base.items() if name != letter}
+        edges: list[Element] = []
+        for part in subject.parts:
+            (element,) = substituted(ring, [part.image.element], others)
+            edges += edges_of(Polynomial.of(ring, element))
+        edges = [edge for edge in edges if edge]
+        found, _ = cells(ring, edges, letter, ring.box.intervals.get(letter, Interval()))
+        for cell in found:
+            yield {**base, letter: cell.sample}
 
 
 def edges_of(polynomial: Polynomial) -> list[Element]:
