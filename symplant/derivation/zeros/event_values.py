@@ -25,6 +25,8 @@ __all__ = ["EventValue", "NominalValues", "nominal_values", "solved_for"]
 
 #: Halvings of a segment on which an equation with functions changes its sign.
 HALVINGS = 60
+#: Most terms of an equation with functions whose changes of sign are looked for.
+LONGEST_EQUATION = 500
 
 
 @dataclass(frozen=True)
@@ -140,6 +142,8 @@ def _with_functions(
     interval: Interval,
 ) -> NominalValues:
     """Solutions that changes of sign prove; there may be others."""
+    if len(equation) > LONGEST_EQUATION:
+        return NominalValues((), False, "the equation contains functions and is too long for a search")
     start = nominal.get(letter)
     if start is None or not interval.contains(start):
         start = next((v for v in ladder(interval, Fraction(1)) if interval.contains(v)), Fraction(1))

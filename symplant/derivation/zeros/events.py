@@ -162,9 +162,9 @@ def _is_too_large(first: Polynomial, second: Polynomial, order: int | None = Non
     factor with the mean number of terms of a coefficient.
     """
     sizes = [log10(max(1.0, len(p.element) / (p.degree + 1))) for p in (first, second)]
-    if order is not None:
-        return order * sizes[0] > SIZE_LIMIT
-    return second.degree * sizes[0] + first.degree * sizes[1] > SIZE_LIMIT
+    products = second.degree * sizes[0] + first.degree * sizes[1] if order is None else order * sizes[0]
+    # Relations are applied after the resultant only, which makes it larger on the way.
+    return products > (SIZE_LIMIT * 2 / 3 if first.ring.has_relations else SIZE_LIMIT)
 
 
 def _resultant(first: Polynomial, second: Polynomial) -> Element:

@@ -13,6 +13,7 @@ from symplant.derivation.stability.subject import Subject
 from symplant.derivation.stability.witnesses import classify
 from symplant.derivation.zeros.case_conditions import ConditionChain
 from symplant.derivation.zeros.vanishing import Surroundings
+from symplant.errors import InputError
 
 __all__ = ["ModeStability", "mode_stability"]
 
@@ -35,9 +36,12 @@ def mode_stability(
     factor: Polynomial, chain: ConditionChain, around: Surroundings, discrete: bool
 ) -> ModeStability:
     """Stability of the roots of a hidden factor where the conditions of the chain hold."""
-    finding = stability_of(
-        factor, discrete=discrete, box=around.box, nonzero=around.nonzero, nominal=around.nominal
-    )
+    try:
+        finding = stability_of(
+            factor, discrete=discrete, box=around.box, nonzero=around.nonzero, nominal=around.nominal
+        )
+    except InputError as error:  # a letter cannot be treated apart from a function that contains it
+        return ModeStability("undecided", "; ".join(fault.reason for fault in error.faults))
     if not chain.images or finding.verdict in ("stable", "unstable", "marginal"):
         # What holds everywhere in the box holds on the part of it where the conditions do.
         return ModeStability(finding.verdict, finding.because, finding, finding.witnesses)
