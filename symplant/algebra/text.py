@@ -24,6 +24,8 @@ def node_text(node: Node) -> str:
 
     >>> node_text(Quotient(Name("k"), Product((Name("m"), Power(Name("l"), 2)))))
     'k/(m*l**2)'
+    >>> node_text(Sum((Name("a"), Product((Number(Fraction(-2)), Name("b"))))))
+    'a - 2*b'
     """
     return _written(node)[0]
 
@@ -160,7 +162,7 @@ def _written(node: Node) -> tuple[str, int]:
         case Name(name=name):
             return name, _ATOM
         case Sum(terms=terms):
-            return _joined(_within(term, _PRODUCT) for term in terms), _SUM
+            return _joined(_term_of_sum(term) for term in terms), _SUM
         case Product(factors=factors):
             return _product(factors)
         case Quotient(numerator=top, denominator=bottom):
@@ -170,6 +172,12 @@ def _written(node: Node) -> tuple[str, int]:
             return f"{_within(base, _ATOM)}**{shown}", _POWER
         case Call(function=function, argument=argument):
             return f"{function}({_written(argument)[0]})", _ATOM
+
+
+def _term_of_sum(node: Node) -> str:
+    """A term with its own sign in front; only a sum within the sum needs brackets."""
+    text, _ = _written(node)
+    return f"({text})" if isinstance(node, Sum) else text
 
 
 def _number(value: Fraction) -> tuple[str, int]:
