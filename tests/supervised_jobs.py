@@ -17,7 +17,7 @@ from pathlib import Path
 
 from symplant.cli.budget import Channel, run_supervised
 
-MARKER = sys.argv[2]
+MARKER = sys.argv[2] if len(sys.argv) > 4 else ""  # collected by pytest, it is no program
 FOLDER = Path(sys.argv[4]) if len(sys.argv) > 4 else Path()
 
 
