@@ -7,8 +7,10 @@ import sys
 import click
 
 from symplant.cli.derive import derive
+from symplant.cli.hidden import hidden
 from symplant.cli.report import report
 from symplant.cli.stability import stability
+from symplant.cli.zeros import zeros
 from symplant.version import __version__
 
 __all__ = ["main", "symplant"]
@@ -31,7 +33,7 @@ def symplant() -> None:
     """
 
 
-for _command in (derive, stability, report):
+for _command in (derive, stability, zeros, hidden, report):
     symplant.add_command(_command)
 
 

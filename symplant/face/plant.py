@@ -13,6 +13,7 @@ from symplant.face.results import DerivationResult, StabilityResult, Writing
 
 if TYPE_CHECKING:
     from symplant.face.work import Derived
+    from symplant.face.zeros_results import HiddenResult, ZerosResult
     from symplant.plant.model import Model
 
 __all__ = ["Plant"]
@@ -109,6 +110,28 @@ class Plant:
         values = {name: Fraction(value) for name, value in (fixed or {}).items()}
         finding = stability(derived.derivation, along=along, fixed=values)
         return StabilityResult(Stabilised(derived, finding), self._writing)
+
+    def zeros(
+        self, along: str | None = None, output: str | None = None, input: str | None = None
+    ) -> ZerosResult:
+        """The zeros of the plant, or of the channel of an output and an input, and what moves them.
+
+        With `along` a letter's name also what happens to the zeros as that letter changes.  Errors:
+        InputError for a name that is no parameter, output or input.
+        """
+        from symplant.face.zeros_results import ZerosResult
+        from symplant.face.zeros_work import check_names, zeros_of
+
+        check_names(self.model, along, output, input)
+        work = zeros_of(self._derive(), along=along, output=output, input=input)
+        return ZerosResult(work, self._writing)
+
+    def hidden(self) -> HiddenResult:
+        """Decoupling, invariant and transmission zeros, and the cases in which a mode hides."""
+        from symplant.face.zeros_results import HiddenResult
+        from symplant.face.zeros_work import hidden_of
+
+        return HiddenResult(hidden_of(self._derive()), self._writing)
 
     def report(self, folder: str | os.PathLike[str]) -> Path:
         """Write the report into a folder; the path of its main LaTeX file.

@@ -21,7 +21,17 @@ if TYPE_CHECKING:
     from symplant.writing.fragments import Fragment
     from symplant.writing.notation import Notation
 
-__all__ = ["ChannelView", "DerivationResult", "PolynomialView", "StabilityResult"]
+__all__ = [
+    "ChannelView",
+    "ConditionView",
+    "CrossingView",
+    "DerivationResult",
+    "PolynomialView",
+    "StabilityResult",
+    "Writing",
+    "checked_latex",
+    "json_text",
+]
 
 
 class Writing:
@@ -164,13 +174,13 @@ class DerivationResult:
 
     def to_json(self) -> str:
         """The machine answer as text."""
-        return _json(self.answer())
+        return json_text(self.answer())
 
     def latex(self) -> str:
         """Displayed LaTeX formulas, to be pasted or \\input; CheckError if they do not read back."""
         from symplant.writing.fragments import derive_fragment
 
-        return _checked(derive_fragment(self._derived.derivation), self._derived)
+        return checked_latex(derive_fragment(self._derived.derivation), self._derived)
 
     def _repr_latex_(self) -> str:
         return self.characteristic_polynomial._repr_latex_()
@@ -250,14 +260,14 @@ class StabilityResult:
 
     def to_json(self) -> str:
         """The machine answer as text."""
-        return _json(self.answer())
+        return json_text(self.answer())
 
     def latex(self) -> str:
         """Displayed LaTeX formulas, to be pasted or \\input; CheckError if they do not read back."""
         from symplant.writing.fragments import stability_fragment
 
         fragment = stability_fragment(self._stabilised.finding, self._writing.model)
-        return _checked(fragment, self._stabilised.derived)
+        return checked_latex(fragment, self._stabilised.derived)
 
     def _repr_latex_(self) -> str:
         return self.latex()
@@ -268,11 +278,12 @@ class StabilityResult:
         return stability_page(self._stabilised.finding, self._writing.model).plain()
 
 
-def _json(answer: dict[str, Any]) -> str:
+def json_text(answer: dict[str, Any]) -> str:
+    """A machine answer as text."""
     return json.dumps(answer, indent=2, ensure_ascii=False) + "\n"
 
 
-def _checked(fragment: Fragment, derived: Derived) -> str:
+def checked_latex(fragment: Fragment, derived: Derived) -> str:
     failed = [check for check in fragment.read_back(derived.substitution.points) if not check.passed]
     if failed:
         raise CheckError(tuple(failed))

@@ -54,6 +54,10 @@ class FormulaWriter:
         """As a fraction; where it is wider than a line, as a division with a slash, in lines."""
         return self._formula(lhs, self.trees.ratio(numerator, denominator), numerator, denominator)
 
+    def tree(self, lhs: str, node: Node) -> Formula:
+        """A tree as it is written."""
+        return self._formula(lhs, node)
+
     def latex(self, element: Element) -> str:
         """An element on one line, by falling powers of the variable."""
         return self.writer.text(self.trees.polynomial(element))

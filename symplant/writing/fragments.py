@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from symplant.algebra.verdict import Check
+from symplant.algebra.verdict import Check, Verdict
 from symplant.checking.readback import read_back
 from symplant.writing.printing import Printer
 from symplant.writing.report_results import channel_sections, characteristic, zero_section
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from symplant.derivation.stability import StabilityFinding
     from symplant.plant.model import Model
 
-__all__ = ["Fragment", "derive_fragment", "stability_fragment"]
+__all__ = ["Fragment", "derive_fragment", "head", "stability_fragment"]
 
 HEAD = "% needs amsmath; every formula was read back from this text and compared with what was derived"
 
@@ -31,8 +31,23 @@ class Fragment:
     printer: Printer
 
     def read_back(self, points: Sequence[Point]) -> list[Check]:
-        """Checks of all its formulas at the points of the exact substitution."""
-        return read_back(self.printer.printed, self.printer.spelling.inverse, points)
+        """Checks of all its formulas at the points of the exact substitution.
+
+        Formulas with roots that the plant's ring has not may have no real value there: the second
+        reader alone takes them.
+        """
+        ring, inverse = self.printer.ring, self.printer.spelling.inverse
+        plain = [p for p in self.printer.printed if p.ring is ring]
+        rooted = [p for p in self.printer.printed if p.ring is not ring]
+        checks = [*read_back(plain, inverse, points), *(read_back(rooted, inverse, ()) if rooted else [])]
+        method = "printed LaTeX read back"
+        return checks + [Check(what, method, Verdict.UNDECIDED, why) for what, why in self.printer.unread]
+
+
+def head(printer: Printer) -> str:
+    """The first lines of a fragment: what it needs, and what could not be read back."""
+    rest = [f"% not read back: {what}: {why}" for what, why in dict.fromkeys(printer.unread)]
+    return "\n".join([HEAD.replace("every formula", "every formula not named here") if rest else HEAD, *rest])
 
 
 def derive_fragment(derivation: Derivation) -> Fragment:

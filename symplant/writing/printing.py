@@ -5,7 +5,9 @@ from __future__ import annotations
 from functools import cached_property
 from typing import TYPE_CHECKING
 
+from symplant.algebra.functions import build_ring
 from symplant.checking.readback import Printed
+from symplant.errors import InputError
 from symplant.writing.conditions import condition
 from symplant.writing.formula import FormulaWriter
 from symplant.writing.spelling import Spelling
@@ -29,6 +31,8 @@ class Printer:
         self.model, self.ring = model, ring
         self.spelling = Spelling(model)
         self.printed: list[Printed] = []
+        #: Formulas that no reader takes (roots of negative numbers), each with the reason.
+        self.unread: list[tuple[str, str]] = []
 
     @cached_property
     def formulas(self) -> FormulaWriter:
@@ -71,6 +75,28 @@ class Printer:
         # The left side is a name of ours; what is read back is what stands behind the relation.
         self.printed.append(Printed(what, formula.body, self.ring, ratio.numerator, ratio.denominator))
         return display.replace(f"{lhs} =", f"{lhs} {relation}").replace(f"{lhs} &=", f"{lhs} &{relation}")
+
+    def tree(self, what: str, lhs: str, node: Node) -> str:
+        """A tree displayed behind a left side; roots that the ring has not may stand in it."""
+        formula = self.formulas.tree(lhs, node)
+        self._remember_tree(what, formula.body, node)
+        return formula.display("equation")
+
+    def tree_inline(self, what: str, node: Node) -> str:
+        """A tree for running text."""
+        text = self.formulas.writer.text(node)
+        self._remember_tree(what, text, node)
+        return text
+
+    def _remember_tree(self, what: str, latex: str, node: Node) -> None:
+        try:
+            # Without the box: a root may be imaginary for the signs declared and is a formula all the same.
+            setting = build_ring(self.ring.variable, self.ring.letters, {what: node})
+        except InputError as error:
+            self.unread.append((what, error.faults[0].reason))
+            return
+        value = setting.converter().convert(node)
+        self.printed.append(Printed(what, latex, setting.ring, value.numerator, value.denominator))
 
     def entry(self, what: str, tree: Node, value: Ratio) -> str:
         """An entry of a matrix as it was given; `value` is what the tree amounts to."""

@@ -27,7 +27,7 @@ if TYPE_CHECKING:
     from symplant.derivation.stability.finding import Point
     from symplant.plant.model import Model
 
-__all__ = ["endpoint_text", "routh_rows", "settled_page", "stability_page"]
+__all__ = ["StabilityWriter", "endpoint_text", "routh_rows", "settled_page", "stability_page"]
 
 SPECIAL = {
     "zero pivot": "zero pivot: the row was replaced by one that has a pivot and the same counts",
@@ -36,6 +36,22 @@ SPECIAL = {
 
 #: A condition of more terms is not spelled on the page, which nobody could read; the machine answer has it.
 LONGEST = 1500
+
+#: What stands above the conditions, the crossings, the intervals, and other words for the verdicts.
+_HEADINGS: dict[str, tuple[str, str, str, dict[str, str]]] = {
+    "stability": (
+        "Asymptotically stable exactly where, within the ranges and signs declared,",
+        "Stability is lost where",
+        "Along ",
+        {},
+    ),
+    "minimum phase": (
+        "Minimum phase exactly where, within the ranges and signs declared,",
+        "A zero reaches the boundary where",
+        "Minimum phase along ",
+        {"stable": "minimum phase", "unstable": "not minimum phase", "marginal": "at the boundary"},
+    ),
+}
 
 VERDICTS = {
     "stable": ("STABLE for every admissible value of the parameters", "good"),
@@ -63,7 +79,7 @@ def stability_page(
     page.add(words, role)
     if finding.because:
         page.rows([("", finding.because)], indent=0)
-    writer = _Writer(finding, page, unicode)
+    writer = StabilityWriter(finding, page, unicode)
     writer.conditions()
     writer.crossings()
     writer.intervals()
@@ -104,11 +120,12 @@ def endpoint_text(end: Endpoint | None, infinite: str) -> str:
     return f"{common}..." if len(common) > 3 else f"[{end.lower}, {end.upper}]"
 
 
-class _Writer:
-    """Writes the parts of one finding to a page."""
+class StabilityWriter:
+    """Writes the parts of one finding to a page; `what` is what the conditions are for."""
 
-    def __init__(self, finding: StabilityFinding, page: Page, unicode: bool) -> None:
+    def __init__(self, finding: StabilityFinding, page: Page, unicode: bool, what: str = "stability") -> None:
         self.finding, self.page, self.unicode = finding, page, unicode
+        self.exactly, self.lost, self.before, self.words = _HEADINGS[what]
         self.plain = PlainFormulas(finding.ring, page.width - 4, unicode)
 
     def conditions(self) -> None:
@@ -120,8 +137,7 @@ class _Writer:
                 self._condition(condition)
         if not self.finding.binding:
             return
-        heading = "Asymptotically stable exactly where, within the ranges and signs declared,"
-        self.page.heading(heading if not never else "The other conditions")
+        self.page.heading(self.exactly if not never else "The other conditions")
         for condition in self.finding.binding:
             self._condition(condition)
 
@@ -153,7 +169,7 @@ class _Writer:
         """Where the boundary of stability is reached."""
         if not self.finding.crossings:
             return
-        self.page.heading("Stability is lost where")
+        self.page.heading(self.lost)
         for crossing in self.finding.crossings:
             self._crossing(crossing)
 
@@ -174,8 +190,11 @@ class _Writer:
         if not self.finding.intervals:
             return
         letter = self.finding.along or "the parameter"
-        self.page.heading(f"Along {letter}")
-        self.page.rows([(self._interval(letter, i), i.verdict) for i in self.finding.intervals])
+        self.page.heading(f"{self.before}{letter}")
+        rows = [
+            (self._interval(letter, i), self.words.get(i.verdict, i.verdict)) for i in self.finding.intervals
+        ]
+        self.page.rows(rows)
 
     def _interval(self, letter: str, interval: StabilityInterval) -> str:
         infinity = "∞" if self.unicode else "infinity"
@@ -196,7 +215,8 @@ class _Writer:
         rows = []
         for side, point in self.finding.witnesses.items():
             if point:
-                rows.append((f"{'not ' if side == 'unstable' else ''}stable at", _values(point)))
+                words = self.words.get(side, "stable" if side == "stable" else "not stable")
+                rows.append((f"{words} at", _values(point)))
         if rows:
             self.page.heading("Witnesses")
             self.page.rows(rows)

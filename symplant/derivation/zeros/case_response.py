@@ -1,4 +1,4 @@
-"""The response to initial conditions where a mode hides: the same letters put in, common factors cancelled."""
+"""The response to initial conditions where a mode hides: letters put in, common factors cancelled."""
 
 from __future__ import annotations
 
