@@ -29,7 +29,7 @@ if TYPE_CHECKING:
 __all__ = ["derive"]
 
 
-@click.command()
+@click.command(short_help="Closed forms: characteristic polynomial, channels, zeros.")
 @plant_command
 @click.option("--latex", "as_latex", is_flag=True, help="Give LaTeX to paste or \\input, formulas only.")
 def derive(

@@ -24,7 +24,7 @@ if TYPE_CHECKING:
 __all__ = ["hidden"]
 
 
-@click.command()
+@click.command(short_help="Modes that no input reaches or no output shows.")
 @plant_command
 @click.option("--latex", "as_latex", is_flag=True, help="Give LaTeX to paste or \\input, formulas only.")
 def hidden(

@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 __all__ = ["report"]
 
 
-@click.command()
+@click.command(short_help="LaTeX report, every formula of it read back.")
 @plant_command
 @click.option(
     "-o",

@@ -25,7 +25,7 @@ if TYPE_CHECKING:
 __all__ = ["zeros"]
 
 
-@click.command()
+@click.command(short_help="Zeros, minimum phase, and what moves the zeros.")
 @plant_command
 @click.option("--latex", "as_latex", is_flag=True, help="Give LaTeX to paste or \\input, formulas only.")
 @click.option("--along", metavar="NAME", help="What happens to the zeros as this parameter changes.")
