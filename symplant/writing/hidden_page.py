@@ -6,6 +6,7 @@ from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from typing import TYPE_CHECKING
 
+from symplant.algebra.expression import Sum
 from symplant.algebra.verdict import Check, Verdict
 from symplant.derivation.zeros.case_response import case_responses
 from symplant.writing.derive_page import add_checks, add_failures, add_head
@@ -74,8 +75,8 @@ class _Writer:
         """One loud line for each case that can be unstable."""
         cases = warned(self.modes)
         for case in cases:
-            where = "" if case.always else f" where {self._conditions(case)}"
-            self.page.rows([("WARNING:", f"{case.warning}{where}")], ["bad"], indent=0)
+            where = "" if case.always else f"where {self._conditions(case)}: "
+            self.page.rows([("WARNING:", f"{where}{case.warning}")], ["bad"], indent=0)
         if cases:
             self.page.add("", indent=0)
 
@@ -140,13 +141,13 @@ class _Writer:
             return
         words, role = MODE_VERDICTS[case.stability.verdict]
         self.page.rows([("", words)], [role])
-        if case.stability.verdict != "conditional":
+        if case.stability.verdict not in ("conditional", "stable"):
             self.page.rows([("", case.stability.because)], ["quiet"], indent=4)
         self._evidence(case)
         if case.verdict is not Verdict.PROVED:
             self.page.rows([("", f"undecided: {case.reason}")], ["doubt"])
         for channel in case.reduced:
-            self._reduced(channel)
+            self._reduced(channel, "" if case.always else "there ")
         self._response(case)
 
     def _evidence(self, case: HiddenCase) -> None:
@@ -154,7 +155,7 @@ class _Writer:
         inside = case.inside_box
         if inside.verdict is Verdict.UNDECIDED:
             rows.append(("may lie outside the ranges:", inside.reason))
-        elif inside.witness and not any(case_witnesses(case).values()):
+        elif inside.witness and not case.always and not any(case_witnesses(case).values()):
             rows.append(("for example at", _values(inside.witness)))
         elif inside.between:
             rows.append(
@@ -165,15 +166,15 @@ class _Writer:
                 rows.append((f"it {'decays' if side == 'stable' else 'does not decay'} at", _values(point)))
         self.page.rows(rows, ["quiet"] * len(rows), indent=4)
 
-    def _reduced(self, channel: ReducedChannel) -> None:
+    def _reduced(self, channel: ReducedChannel, there: str) -> None:
         name = f"{channel.output}/{channel.input}"
         size = len(channel.numerator.element) + len(channel.denominator.element)
         if channel.numerator.is_zero:
-            self.page.add(f"there {name} is identically zero", "", 4)
+            self.page.add(f"{there}{name} is identically zero", "", 4)
         elif size > LONGEST:
-            self.page.add(f"{name} as it is seen there is long: --json has it", "quiet", 4)
+            self.page.add(f"{there}{name} is long: --json has it", "quiet", 4)
         else:
-            shown = self.plain.ratio(f"there {name}", channel.numerator.element, channel.denominator.element)
+            shown = self.plain.ratio(f"{there}{name}", channel.numerator.element, channel.denominator.element)
             self.page.add(shown, "", 4)
 
     def _response(self, case: HiddenCase) -> None:
@@ -199,14 +200,14 @@ class _Writer:
         for state, numerator in zip(self.model.states, numerators, strict=True):
             if numerator.is_zero:
                 continue
-            name = f"{state.name}(0)"
-            text = self.plain.writer.text(self.plain.trees.factored(numerator.element))
-            minus = "−" if self.unicode else "-"
-            sign = minus if len(numerator.element) == 1 and text.startswith(minus) else "+"
-            text = text[len(minus) :] if sign == minus else text
-            body = f"{text if len(numerator.element) == 1 else f'({text})'} {name}" if text != "1" else name
-            head = f"  {sign} " if lines else f"N = {minus if sign == minus else ''}"
-            lines.append(head + body)
+            written = self.plain.writer.write(self.plain.trees.factored(numerator.element))
+            text, minus = self.plain.writer.text(written.node), "−" if self.unicode else "-"
+            if isinstance(written.node, Sum):
+                text = f"({text})"
+            negative = text.startswith(minus)
+            text = text.removeprefix(minus)
+            head = f"  {minus if negative else '+'} " if lines else f"N = {minus if negative else ''}"
+            lines.append(f"{head}{'' if text == '1' else f'{text} '}{state.name}(0)")
         return lines or ["N = 0"]
 
     def _conditions(self, case: HiddenCase) -> str:

@@ -45,7 +45,7 @@ def zeros_part(study: ZerosStudy, part: str, latex: Latex) -> Answer:
 
 
 def _polynomial(study: ZerosStudy, latex: Latex) -> Answer:
-    return {"zero_polynomial": polynomial_answer(study.polynomial, latex)}
+    return {"zero_polynomial": polynomial_answer(study.polynomial, latex), "zero_polynomial_is": study.kind}
 
 
 def _forms(study: ZerosStudy, latex: Latex) -> Answer:

@@ -23,8 +23,8 @@ if TYPE_CHECKING:
 __all__ = ["numbered", "zeros_page", "zeros_part_page"]
 
 _SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
-#: Directions of more terms than this are left to the machine answer.
-LONGEST_DIRECTION = 120
+#: Directions of more characters than this are left to the machine answer.
+LONGEST_DIRECTION = 600
 
 VERDICTS = {
     "stable": ("MINIMUM PHASE for every admissible value of the parameters", "good"),
@@ -103,6 +103,10 @@ class _Writer:
         """The polynomial whose roots are meant."""
         self.page.heading(f"Zeros of {self._whose}")
         zeros = self.study.polynomial
+        if self.study.kind == "invariant zeros":
+            hint = "--output and --input choose a channel"
+            text = f"the roots are the invariant zeros, for there is no determinant to take; {hint}"
+            self.page.rows([("", text)], ["quiet"], indent=0)
         if zeros.is_zero:
             self.page.add("the transfer function is identically zero: every number is a zero", "doubt")
             return
@@ -222,7 +226,7 @@ class _Writer:
         head = plain.ratio(f"at {self.variable}", direction.zero.numerator, direction.zero.denominator)
         self.page.add(head)
         entries = (*direction.state, *direction.input)
-        if sum(len(entry) for entry in entries) > LONGEST_DIRECTION:
+        if sum(len(plain.text(entry)) for entry in entries if entry) > LONGEST_DIRECTION:
             self.page.add("the direction is long: --json has it", "quiet", 4)
             return
         names = [f"x0: {state.name}" for state in self.model.states]

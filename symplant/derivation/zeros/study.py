@@ -49,6 +49,17 @@ class ZerosStudy:
     along: Along | None = None
 
     @property
+    def kind(self) -> str:
+        """What the polynomial is: a channel's numerator, the zero polynomial, or that of invariant zeros."""
+        model, zero = self.derivation.model, self.derivation.zero_polynomial
+        outputs = 1 if self.output is not None else len(model.outputs)
+        inputs = 1 if self.input is not None else len(model.inputs)
+        if outputs == inputs == 1:
+            return "numerator"
+        whole = self.output is None and self.input is None
+        return "zero polynomial" if whole and zero and not zero.polynomial.is_zero else "invariant zeros"
+
+    @property
     def checks(self) -> tuple[Check, ...]:
         """The checks of the directions: each is put into the pencil."""
         found = self.directions.directions if self.directions else ()
