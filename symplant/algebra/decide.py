@@ -19,9 +19,11 @@ from symplant.algebra.decide_bounds import positive_by_bounds
 from symplant.algebra.decide_collect import collected_sign
 from symplant.algebra.decide_factors import Radical, radical
 from symplant.algebra.decide_means import positive_by_means
-from symplant.algebra.decide_search import find_sign, letters_in
+from symplant.algebra.decide_search import find_sign, letters_in, respects
 from symplant.algebra.decide_single import cells
+from symplant.algebra.decide_solver import solve
 from symplant.algebra.effort import NORMAL, Effort
+from symplant.algebra.enclosure import certified_sign
 from symplant.algebra.points import centre, points
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import pattern_sign
@@ -96,10 +98,31 @@ def decide_positive(
     point = find_sign(ring, kernel.element, (-1, 0), nominal, nonzero, count, bounds)
     if point is not None:
         return Decision(Verdict.REFUTED, f"it is not positive at {_shown(point)}", point)
+    asked = ""
+    if effort is None and bounds.solver:
+        solved = solve(ring, [], [kernel.element], bounds, nonzero)
+        if solved.answer == "unsat":
+            return Decision(Verdict.PROVED, "proved by z3: no point of the box where it is not positive")
+        if solved.answer == "sat" and _replayed(ring, kernel.element, solved.values, nonzero):
+            why = f"it is not positive at {_shown(solved.values)} (a point of z3, replayed exactly)"
+            return Decision(Verdict.REFUTED, why, solved.values)
+        asked = f", z3 answered {solved.answer!r}" if solved.asked else ""
     return Decision(
         Verdict.UNDECIDED,
         "signs of terms and factors, collecting, coefficients over parts of the box and means did not prove "
-        f"it, and none of {bounds.sample(len(kernel.element), count)} points refuted it",
+        f"it, and none of {bounds.sample(len(kernel.element), count)} points refuted it{asked}",
+    )
+
+
+def _replayed(
+    ring: Ring, element: Element, point: Mapping[str, Fraction], nonzero: Sequence[Element]
+) -> bool:
+    """Whether a point lies in the box and refutes the element, exactly."""
+    box = ring.box.intervals
+    return (
+        all(box[name].contains(value) for name, value in point.items() if name in box)
+        and certified_sign(ring, element, point) in (-1, 0)
+        and respects(ring, nonzero, point)
     )
 
 

@@ -48,13 +48,13 @@ class Stabilised:
 
     @property
     def checks(self) -> tuple[Check, ...]:
-        """The checks of the derivation; the conditions carry their own reasons."""
-        return self.derived.checks
+        """The checks of the derivation, and of the conditions by a second criterion."""
+        return (*self.derived.checks, *self.finding.checks)
 
     @property
     def passed(self) -> bool:
         """Whether no check found anything wrong."""
-        return self.derived.passed
+        return all(check.passed for check in self.checks)
 
 
 def derive_plan(model: Model, stability: bool = False) -> list[str]:

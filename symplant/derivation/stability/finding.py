@@ -12,6 +12,7 @@ from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.routh import RouthArray, routh_array
+from symplant.algebra.verdict import Check
 
 __all__ = [
     "Bound",
@@ -132,6 +133,7 @@ class StabilityFinding:
     along: str | None = None
     special_cases: tuple[SpecialCase, ...] = ()
     notes: tuple[str, ...] = ()
+    checks: tuple[Check, ...] = ()
 
     @property
     def binding(self) -> tuple[Condition, ...]:

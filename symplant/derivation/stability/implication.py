@@ -15,6 +15,7 @@ from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign, pattern_sign
 from symplant.algebra.text import element_text
 from symplant.derivation.stability.settling import Settled
+from symplant.derivation.stability.solver import alone, follows
 from symplant.derivation.stability.subject import Subject
 
 __all__ = ["contradiction", "irredundant", "reduced"]
@@ -39,6 +40,25 @@ def irredundant(subject: Subject, settled: Sequence[Settled]) -> list[Settled]:
         reason = _follows(subject, result[place].element, others)
         if reason:
             result[place] = replace(result[place], status="implied", because=reason)
+    return _each_needed(subject, result)
+
+
+def _each_needed(subject: Subject, settled: list[Settled]) -> list[Settled]:
+    """For each condition a point where it alone fails; else z3 is asked whether it follows."""
+    result = list(settled)
+    if sum(c.open for c in result) < 2:
+        return result
+    for place in _weakest_first(result):
+        others = [c.element for i, c in enumerate(result) if c.open and i != place]
+        target = result[place]
+        if not others or alone(subject, target.element, others) is not None:
+            continue
+        reason = follows(subject, target.element, others)
+        if reason:
+            result[place] = replace(target, status="implied", because=reason)
+        else:
+            unsure = "whether it follows from the others was not settled"
+            result[place] = replace(target, because=f"{target.because}; {unsure}")
     return result
 
 

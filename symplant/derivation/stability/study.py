@@ -16,6 +16,7 @@ from symplant.derivation.derive import Derivation
 from symplant.derivation.pencil import Pencil, build_pencil
 from symplant.derivation.stability.boundary import marginal_conditions, symmetric_sentence
 from symplant.derivation.stability.candidates import Candidate, candidates
+from symplant.derivation.stability.cross_check import cross_checks
 from symplant.derivation.stability.crossings import crossings
 from symplant.derivation.stability.energy import energy_argument
 from symplant.derivation.stability.finding import (
@@ -203,6 +204,7 @@ def _study(
         along if intervals else None,
         cases,
         (*notes, *([case_note] if case_note else []), *content_notes(subject)),
+        cross_checks(subject, ordinary),
     )
 
 

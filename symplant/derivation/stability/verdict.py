@@ -11,8 +11,9 @@ from symplant.derivation.stability.finding import Point, StabilityInterval, Stab
 from symplant.derivation.stability.implication import contradiction
 from symplant.derivation.stability.planes import stable_cell
 from symplant.derivation.stability.settling import Settled
+from symplant.derivation.stability.solver import excluded as excluded_by_solver
 from symplant.derivation.stability.subject import Subject
-from symplant.derivation.stability.witnesses import find_point
+from symplant.derivation.stability.witnesses import classify, find_point
 
 __all__ = ["Outcome", "judge"]
 
@@ -61,6 +62,11 @@ def judge(
             one, two = subject.letters
             reason = f"none of the cells into which the boundary cuts the plane of {one} and {two} is stable"
             return _never_stable(subject, ordinary, marginal, stage, reason)
+    if stable is None:
+        nowhere, point = excluded_by_solver(subject, elements)
+        if nowhere:
+            return _never_stable(subject, ordinary, marginal, stage, nowhere)
+        stable = point if point is not None and classify(subject, point) == "stable" else None
     unstable = find_point(subject, elements, {"unstable"}) or find_point(subject, elements, {"axis"})
     found = {"stable": stable, "unstable": unstable}
     if stable is not None and unstable is not None:
