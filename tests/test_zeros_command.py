@@ -115,6 +115,27 @@ def test_the_hidden_mode_is_uncontrollable_there_in_numbers():
     assert (A - mode * sympy.eye(3)).col_join(sympy.Matrix([[1, 0, 0]])).rank() == 3
 
 
+def test_the_free_response_is_that_of_the_matrices():
+    answer = Plant.from_file(HAY).hidden().answer()
+    s, d, c, phi, mu, tau, eta = sympy.symbols("s d c phi mu tau eta")
+    names = {str(x): x for x in (s, d, c, phi, mu, tau, eta)}
+    A = sympy.Matrix(
+        [
+            [eta * c - d, -eta * c, 0],
+            [-eta * c, eta * c - d, 0],
+            [mu * phi / tau, mu * (1 - phi) / tau, -1 / tau],
+        ]
+    )
+    inverse = (s * sympy.eye(3) - A).inv()
+    rows = {"h": inverse[2, :], "w_1": inverse[0, :]}
+    assert [response["output"] for response in answer["free_response"]] == ["h", "w_1"]
+    for response in answer["free_response"]:
+        below = sympy.sympify(response["denominator"], locals=names)
+        for state, part in zip(("w_1", "w_2", "h"), rows[response["output"]], strict=True):
+            above = sympy.sympify(response["numerators"][state], locals=names)
+            assert sympy.simplify(above / below - part) == 0
+
+
 def test_cases_that_cannot_happen_stand_apart():
     page = run("hidden", MILL).stdout
     inside, outside = page.split("Outside the signs and ranges declared")

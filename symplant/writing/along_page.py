@@ -102,8 +102,9 @@ class AlongWriter:
         self.page.add(f"{self.plain.factored('', event.equation)} = 0", "", 4)
         if event.at_nominal:
             self.page.add("(all other parameters at their nominal values)", "quiet", 4)
-        for tree in solved_trees(event, self.ring.gen(self.letter)):
-            self.page.add(self.plain.tree(f"that is, {self.name}", tree), "", 4)
+        for number, tree in enumerate(solved_trees(event, self.ring.gen(self.letter))):
+            lead = "or" if number else "that is,"
+            self.page.add(self.plain.tree(f"{lead} {self.name}", tree), "", 4)
         if event.frequency_squared is not None:
             ratio = event.frequency_squared
             omega = "ω²" if self.unicode else "omega^2"

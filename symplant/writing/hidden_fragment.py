@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from symplant.algebra.factored_tree import factored_ratio_tree
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.verdict import Verdict
 from symplant.derivation.zeros.case_response import case_responses
@@ -36,8 +37,19 @@ class _Writer:
 
     def warnings(self) -> list[str]:
         """What must not be overlooked."""
-        sentences = dict.fromkeys(case.warning for case in warned(self.modes))
-        return [rf"\textbf{{Warning.}} {prose(sentence)}" for sentence in sentences]
+        return [rf"\textbf{{Warning.}} {self._warning(case)}" for case in warned(self.modes)]
+
+    def _warning(self, case: HiddenCase) -> str:
+        """The sentence of a case, with the names of the outputs as formulas."""
+        spelling = self.printer.spelling
+        text = prose(case.warning.partition("; it shows in")[0]).rstrip(".")
+        if case.conditions:
+            where = [f"${self.printer.inline('condition of a warning', c)} = 0$" for c in case.conditions]
+            text += f" where {' and '.join(where)}"
+        if case.visible_in:
+            outputs = ", ".join(f"${spelling.signal(name)}$" for name in case.visible_in)
+            text += f"; it shows in the response to initial conditions of {outputs}"
+        return f"{text}."
 
     def structure(self) -> list[str]:
         """Zeros of all kinds for generic values."""
@@ -84,10 +96,12 @@ class _Writer:
             parts.append(self.printer.vanishing("hidden factor", case.hidden_factor.element))
         parts.append(f"{prose(KINDS[case.kind])} {prose(MODE_VERDICTS[case.stability.verdict][0])}")
         spelling = self.printer.spelling
+        if case.reduced:
+            parts.append("What is seen is" if case.always else "What is seen there is")
         for channel in case.reduced:
             ratio = Ratio.of(self.printer.ring, channel.numerator.element, channel.denominator.element)
             lhs = rf"\frac{{{spelling.signal(channel.output)}}}{{{spelling.signal(channel.input)}}}"
-            parts += ["There", self.printer.ratio(f"reduced {channel.output}/{channel.input}", lhs, ratio)]
+            parts.append(self.printer.ratio(f"reduced {channel.output}/{channel.input}", lhs, ratio))
         return [*parts, *self._responses(case)]
 
     def _responses(self, case: HiddenCase) -> list[str]:
@@ -104,5 +118,6 @@ class _Writer:
                     continue
                 ratio = Ratio.of(self.printer.ring, numerator.element, response.denominator.element)
                 lhs = rf"\frac{{{y}({s})}}{{{spelling.signal(state.name)}(0)}}"
-                parts.append(self.printer.ratio(f"free response of {output}", lhs, ratio))
+                tree = factored_ratio_tree(ratio)
+                parts.append(self.printer.tree(f"free response of {output}", lhs, tree))
         return parts

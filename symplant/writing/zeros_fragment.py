@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from symplant.algebra.trees import ratio_tree, tree_of
+from symplant.algebra.trees import ratio_tree
 from symplant.writing.along_answer import leading_term
 from symplant.writing.along_page import EVENTS, motion_words, moving_factors, solved_trees
+from symplant.writing.formula import FormulaWriter
 from symplant.writing.fragments import Fragment, head
 from symplant.writing.printing import Printer
 from symplant.writing.tex_text import prose, tex_text
@@ -147,19 +148,22 @@ class _Writer:
 
     def _direction(self, what: str, direction: ZeroDirection) -> list[str]:
         model, spelling = self.study.derivation.model, self.printer.spelling
+        shapes = FormulaWriter(direction.ring, spelling).trees
         parts = ["For", self.printer.tree(what, self.s, ratio_tree(direction.zero))]
         names = [(rf"\left(\mathbf{{x}}_0\right)_{{{spelling.signal(x.name)}}}") for x in model.states]
         inputs = [u.name for u in model.inputs if self.study.input in (None, u.name)]
         names += [rf"\left(\mathbf{{u}}_0\right)_{{{spelling.signal(name)}}}" for name in inputs]
         for lhs, entry in zip(names, (*direction.state, *direction.input), strict=True):
             if entry:
-                parts.append(self.printer.tree(what, lhs, tree_of(direction.ring, entry)))
+                parts.append(self.printer.tree(what, lhs, shapes.polynomial(entry)))
         return parts
 
     def along(self, along: Along) -> list[str]:
         """Events, sensitivities and limits."""
         name = self.printer.spelling[along.parameter]
         parts = [rf"\paragraph{{\boldmath Along ${name}$}}"]
+        if not along.events:
+            parts.append("Nothing happens to the zeros: no equation was found that can hold.")
         for event in along.events:
             parts += self._event(event, along, name)
         for finding in moving_factors(along):
@@ -170,7 +174,7 @@ class _Writer:
                 parts += ["At the roots of", self.printer.vanishing(what, formula.factor.element)]
             parts.append(self.printer.ratio(what, lhs, formula.derivative))
             if formula.motion is not None:
-                parts.append(prose(motion_words(formula.motion, along.parameter)))
+                parts.append(prose(motion_words(formula.motion, "@")).replace("@", f"${name}$"))
         for limit in along.limits:
             parts += self._limit(limit, along, name)
         return [*parts, *(prose(note) for note in along.notes)]
@@ -181,8 +185,8 @@ class _Writer:
             prose(f"{EVENTS[event.event]} where").rstrip("."),
             self.printer.vanishing(what, event.equation),
         ]
-        for tree in solved_trees(event, self.printer.ring.gen(along.parameter)):
-            parts += ["that is,", self.printer.tree(what, name, tree)]
+        for number, tree in enumerate(solved_trees(event, self.printer.ring.gen(along.parameter))):
+            parts += ["or" if number else "that is,", self.printer.tree(what, name, tree)]
         if event.frequency_squared is not None:
             parts += ["with", self.printer.ratio(what, r"\omega^{2}", event.frequency_squared)]
         return parts
