@@ -14,6 +14,7 @@ from symplant.writing.hidden_answer import case_witnesses
 from symplant.writing.numbers import number_text
 from symplant.writing.page import GLUE, Page
 from symplant.writing.plain import PlainFormulas
+from symplant.writing.plain_tree import columns
 
 if TYPE_CHECKING:
     from symplant.algebra.polynomial import Polynomial
@@ -207,7 +208,11 @@ class _Writer:
             negative = text.startswith(minus)
             text = text.removeprefix(minus)
             head = f"  {minus if negative else '+'} " if lines else f"N = {minus if negative else ''}"
-            lines.append(f"{head}{'' if text == '1' else f'{text} '}{state.name}(0)")
+            line = f"{head}{'' if text == '1' else f'{text} '}{state.name}(0)"
+            if columns(line) > self.plain.columns:
+                head = f"  + {state.name}(0) times" if lines else f"N = {state.name}(0) times"
+                line = self.plain.tree(head, written.node, relation="")
+            lines.append(line)
         return lines or ["N = 0"]
 
     def _conditions(self, case: HiddenCase) -> str:
