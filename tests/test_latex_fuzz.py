@@ -133,7 +133,7 @@ class Writer:
             following = self.factor(factor)
             # Without a sign only where nothing can be taken for an argument, a mixed number or one number.
             safe = isinstance(factor, Name | Call) or (
-                isinstance(factor, Power) and isinstance(factor.base, Name)
+                isinstance(factor, Power) and raised_bare(factor.base)
             )
             sign = self.rng.choice([r"\cdot ", r"\times ", "*", "·", r" \cdot "])
             text += self.gap() if safe and self.rng.random() < 0.7 else self.space() + sign + self.space()
@@ -155,8 +155,7 @@ class Writer:
                     return f"{command}{top.value}{bottom.value}"
                 return f"{command}{self.space()}{{{self.sum(top)}}}{self.space()}{{{self.sum(bottom)}}}"
             case Power(base=base, exponent=exponent):
-                plain = isinstance(base, Name) and base.name not in ("xstar",)
-                written = self.factor(base) if plain else self.brackets(self.sum(base))
+                written = self.factor(base) if raised_bare(base) else self.brackets(self.sum(base))
                 if 0 <= exponent < 10 and self.rng.random() < 0.5:
                     return f"{written}^{exponent}"
                 return f"{written}^{{{self.space()}{exponent}{self.space()}}}"
@@ -191,6 +190,11 @@ class Writer:
             [("", ""), ("$", "$"), (r"\[", r"\]"), (r"\(", r"\)"), (r"\displaystyle ", "")]
         )
         return around[0] + text + self.rng.choice(["", "", " .", r"\,,"]) + around[1]
+
+
+def raised_bare(base: Node) -> bool:
+    """Whether a power is written without brackets round its base; x^* has a superscript already."""
+    return isinstance(base, Name) and base.name != "xstar"
 
 
 def has_value(node: Node) -> bool:
