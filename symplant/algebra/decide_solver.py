@@ -23,7 +23,7 @@ from symplant.algebra.function_range import tree_range
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.value_range import ValueRange, interval_range
 
-__all__ = ["Solved", "solve"]
+__all__ = ["Solved", "smt_text", "solve"]
 
 #: Most terms in all the elements of one question, and most generators.
 TERMS, GENERATORS = 400, 12
@@ -67,23 +67,42 @@ def solve(
         return UNKNOWN
     if not effort.solver or size > TERMS or len(used) > GENERATORS or find_spec("z3") is None:
         return UNKNOWN
-    avoided = [e for e in nonzero if ring.used([e]) <= used]
-    inside = letters_in(ring, elements)
-    keys = sorted(used | set(inside), key=lambda key: ring.position[key])
-    names = {key: f"v{number}" for number, key in enumerate(keys)}
-    lines = [f"(declare-fun {name} () Real)" for name in names.values()]
-    lines += _bounds(ring, names)
-    lines += _relations(ring, names)
-    lines += [f"(assert (> {_text(ring, e, names)} 0.0))" for e in positive]
-    lines += [f"(assert (<= {_text(ring, e, names)} 0.0))" for e in not_positive]
-    lines += [f"(assert (not (= {_text(ring, e, names)} 0.0)))" for e in avoided]
-    answer = _ask("\n".join(lines), list(names.values()), effort.solver)
+    text, names = smt_text(ring, positive, not_positive, nonzero)
+    answer = _ask(text, list(names.values()), effort.solver)
     back = {name: key for key, name in names.items()}
     values = {back[name]: Fraction(value) for name, value in answer.get("values", {}).items()}
     return Solved(
         str(answer.get("answer", "unknown")),
         {key: value for key, value in values.items() if key in ring.letters},
     )
+
+
+def smt_text(
+    ring: Ring,
+    positive: Sequence[Element],
+    not_positive: Sequence[Element],
+    nonzero: Sequence[Element] = (),
+    any_fails: Sequence[Element] = (),
+) -> tuple[str, dict[str, str]]:
+    """The question in SMT-LIB, and the names of its variables by generator.
+
+    Of `any_fails` at least one is not positive.
+    """
+    elements = [*positive, *not_positive, *any_fails]
+    used = ring.used(elements)
+    keys = sorted(used | set(letters_in(ring, elements)), key=lambda key: ring.position[key])
+    names = {key: f"v{number}" for number, key in enumerate(keys)}
+    avoided = [e for e in nonzero if ring.used([e]) <= used]
+    lines = [f"(declare-fun {name} () Real)" for name in names.values()]
+    lines += _bounds(ring, names)
+    lines += _relations(ring, names)
+    lines += [f"(assert (> {_text(ring, e, names)} 0.0))" for e in positive]
+    lines += [f"(assert (<= {_text(ring, e, names)} 0.0))" for e in not_positive]
+    lines += [f"(assert (not (= {_text(ring, e, names)} 0.0)))" for e in avoided]
+    if any_fails:
+        one = " ".join(f"(<= {_text(ring, e, names)} 0.0)" for e in any_fails)
+        lines.append(f"(assert (or {one}))")
+    return "\n".join(lines), names
 
 
 def _ask(text: str, names: Sequence[str], limit: int) -> dict[str, Any]:

@@ -27,14 +27,27 @@ if TYPE_CHECKING:
 __all__ = ["stability"]
 
 
-@click.command()
+@click.command(short_help="Conditions for stability, and where it is lost.")
 @plant_command
 @click.option("--latex", "as_latex", is_flag=True, help="Give LaTeX to paste or \\input, formulas only.")
 @click.option(
     "--along", metavar="NAME", help="Exact stability intervals of this parameter, others at nominal."
 )
 @click.option(
-    "--set", "fixed", multiple=True, metavar="NAME=VALUE", help="With --along: another value than nominal."
+    "--plane", nargs=2, metavar="X Y", help="The stable region over two parameters, others at nominal."
+)
+@click.option(
+    "--picture",
+    type=click.Path(path_type=Path),
+    metavar="FILE",
+    help="With --plane: draw it (.svg, .pdf or .png).",
+)
+@click.option(
+    "--set",
+    "fixed",
+    multiple=True,
+    metavar="NAME=VALUE",
+    help="With --along or --plane: another value than nominal.",
 )
 @click.option(
     "--effort",
@@ -49,6 +62,8 @@ def stability(
     as_json: bool,
     as_latex: bool,
     along: str | None,
+    plane: tuple[str, str] | None,
+    picture: Path | None,
     fixed: tuple[str, ...],
     effort: str,
     routh: bool,
@@ -62,6 +77,13 @@ def stability(
     """
     session = Session("stability", plant, as_json, max_seconds, max_memory)
     width, unicode, colour = page_width(), speaks_unicode(), wants_colour()
+
+    def region(channel: Channel) -> int:
+        from symplant.cli.plane import show_plane
+        from symplant.reading.plant_file import read_plant_file
+
+        model = read_plant_file(plant)
+        return show_plane(channel, model, plane, picture, fixed, as_json, width, unicode, colour)
 
     def work(channel: Channel) -> int:
         from symplant.checking.second_opinion import SecondOpinion
@@ -95,32 +117,19 @@ def stability(
             channel.out(page.coloured() if colour else page.plain())
         return 0 if found.passed else 1
 
-    sys.exit(session.run(work))
+    sys.exit(session.run(region if plane or picture else work))
 
 
 def _values(model: Model, along: str | None, fixed: tuple[str, ...]) -> dict[str, Fraction]:
     """The values given with --set, and that --along names a parameter; all faults at once."""
-    from symplant.reading.suggestions import did_you_mean
+    from symplant.cli.fixed_values import fixed_values, unknown_parameter
 
     faults: list[Fault] = []
-    values: dict[str, Fraction] = {}
     if along is not None and along not in model.letters:
-        faults.append(
-            Fault("--along", f"no parameter is called {along!r}", did_you_mean(along, model.letters))
-        )
-    for text in fixed:
-        name, _, value = text.partition("=")
-        name = name.strip()
-        if name not in model.letters:
-            hint = did_you_mean(name, model.letters)
-            faults.append(Fault("--set", f"no parameter is called {name!r}", hint))
-            continue
-        try:
-            values[name] = Fraction(value.strip())
-        except (ValueError, ZeroDivisionError):
-            faults.append(Fault("--set", f"{value!r} is not a number", "write NAME=VALUE, for example k=1.5"))
+        faults.append(unknown_parameter(model, "--along", along))
+    values = fixed_values(model, fixed, faults)
     if fixed and along is None:
-        faults.append(Fault("--set", "is for --along only", "add --along NAME"))
+        faults.append(Fault("--set", "is for --along and --plane only", "add --along NAME or --plane X Y"))
     if faults:
         raise InputError(faults)
     return values

@@ -10,6 +10,7 @@ from symplant.derivation.stability.finding import (
     StabilityFinding,
     StabilityInterval,
 )
+from symplant.derivation.stability.plane import PlaneCell, StabilityPlane, stability_plane
 from symplant.derivation.stability.study import stability, stability_of
 
 __all__ = [
@@ -17,10 +18,13 @@ __all__ = [
     "Condition",
     "Crossing",
     "Endpoint",
+    "PlaneCell",
     "SettledCondition",
     "SpecialCase",
     "StabilityFinding",
     "StabilityInterval",
+    "StabilityPlane",
     "stability",
     "stability_of",
+    "stability_plane",
 ]

@@ -15,6 +15,7 @@ from fractions import Fraction
 from itertools import combinations
 
 from symplant.algebra.box import Interval
+from symplant.algebra.decide_search import letters_in
 from symplant.algebra.decide_single import cells
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.substitution import substituted
@@ -32,11 +33,14 @@ CURVES, DEGREE, SAMPLES = 10, 14, 3000
 def open_cells(subject: Subject) -> Iterator[dict[str, Fraction]] | None:
     """One point of every open cell of the box; None if the letters are not two or it would take too long."""
     ring = subject.ring
-    if len(subject.letters) != 2 or subject.functions:
+    if len(subject.letters) != 2:
         return None
+    used = ring.used([part.polynomial.element for part in subject.parts]) - {ring.variable, *ring.letters}
+    if letters_in(ring, [ring.gen(key) for key in used]):
+        return None  # a function of the letters: the curves are not algebraic
     if any(not cells(ring, [], x, ring.box.intervals.get(x, Interval()))[0] for x in subject.letters):
         return None  # a letter with a single value leaves the box without open cells
-    elements: list[Element] = [e for e in subject.nonzero if ring.used([e]) <= set(subject.letters)]
+    elements: list[Element] = [e for e in subject.nonzero if ring.used([e]) & set(subject.letters)]
     for part in subject.parts:
         image = simple_image(part.image) if part.symmetric else part.image
         elements += [part.polynomial.leading, *edges_of(image)]
