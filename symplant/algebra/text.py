@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from fractions import Fraction
 
 from symplant.algebra.expression import Call, Name, Node, Number, Power, Product, Quotient, Sum
@@ -10,7 +10,7 @@ from symplant.algebra.factors import factors as irreducible
 from symplant.algebra.ratio import Ratio
 from symplant.algebra.ring import Element, Ring, Term
 
-__all__ = ["element_text", "factored_text", "node_text", "polynomial_text", "ratio_text"]
+__all__ = ["collected_text", "element_text", "factored_text", "node_text", "polynomial_text", "ratio_text"]
 
 #: Elements of more terms than this are not factored for printing: the factorisation would cost more
 #: than everything else, and nobody reads its outcome.
@@ -48,22 +48,24 @@ def polynomial_text(ring: Ring, element: Element) -> str:
     >>> polynomial_text(ring, ring.gen("m") * s**2 - (ring.gen("k") + ring.gen("q")) * s)
     'm*s**2 + (-k - q)*s'
     """
-    parts = []
     coefficients = ring.coefficients(element)
+    return collected_text(ring, coefficients, [element_text(ring, c) for c in coefficients])
+
+
+def collected_text(ring: Ring, coefficients: Sequence[Element], texts: Sequence[str]) -> str:
+    """A polynomial by falling powers from its ascending coefficients and their texts."""
+    parts = []
     for power in range(len(coefficients) - 1, -1, -1):
-        coefficient = coefficients[power]
+        coefficient, text = coefficients[power], texts[power]
         if not coefficient:
             continue
         s = {0: "", 1: ring.variable}.get(power, f"{ring.variable}**{power}")
-        if len(coefficient) > 1 and power:
-            parts.append(f"({element_text(ring, coefficient)})*{s}")
-        elif not power:
-            parts.append(element_text(ring, coefficient))
+        if not power:
+            parts.append(text)
+        elif len(coefficient) > 1:
+            parts.append(f"({text})*{s}")
         else:
-            ((_, exponents),) = ring.terms(coefficient)
-            value = int(coefficient.leading_coefficient())
-            place = ring.position[ring.variable]
-            parts.append(term_text(ring, (value, (*exponents, (place, power)))))
+            parts.append({"1": s, "-1": f"-{s}"}.get(text, f"{text}*{s}"))
     return _joined(parts)
 
 
@@ -143,15 +145,15 @@ def term_text(ring: Ring, term: Term) -> str:
 
 
 def _joined(terms: Iterable[str]) -> str:
-    text = ""
+    parts: list[str] = []
     for term in terms:
-        if not text:
-            text = term
+        if not parts:
+            parts.append(term)
         elif term.startswith("-"):
-            text += f" - {term[1:]}"
+            parts += [" - ", term[1:]]
         else:
-            text += f" + {term}"
-    return text or "0"
+            parts += [" + ", term]
+    return "".join(parts) or "0"
 
 
 def _written(node: Node) -> tuple[str, int]:

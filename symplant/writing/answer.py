@@ -6,7 +6,15 @@ from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any, TypeAlias
 
-from symplant.algebra.text import element_text, factored_text, node_text, polynomial_text, ratio_text
+from symplant.algebra.text import (
+    FACTOR_LIMIT,
+    collected_text,
+    element_text,
+    factored_text,
+    node_text,
+    polynomial_text,
+    ratio_text,
+)
 from symplant.algebra.verdict import Check
 
 if TYPE_CHECKING:
@@ -72,11 +80,13 @@ def plant_answer(model: Model) -> Answer:
 def polynomial_answer(polynomial: Polynomial, latex: Latex) -> Answer:
     """POLY of the contract: ascending coefficients, the whole, the whole factored, LaTeX."""
     ring, element = polynomial.ring, polynomial.element
+    texts = [element_text(ring, coefficient) for coefficient in polynomial.coefficients]
+    expression = collected_text(ring, polynomial.coefficients, texts)
     return {
         "variable": ring.variable,
-        "coefficients": [element_text(ring, c) for c in polynomial.coefficients] or ["0"],
-        "expression": polynomial_text(ring, element),
-        "factored": factored_text(ring, element),
+        "coefficients": texts or ["0"],
+        "expression": expression,
+        "factored": expression if len(element) > FACTOR_LIMIT else factored_text(ring, element),
         "latex": latex(ring, element),
     }
 
@@ -85,14 +95,15 @@ def derive_answer(derivation: Derivation, checks: Sequence[Check], latex: Latex)
     """The answer of `derive`."""
     ring = derivation.ring
     characteristic, zero = derivation.characteristic_polynomial, derivation.zero_polynomial
-    written: dict[int, Answer] = {}
+    written: list[tuple[Polynomial, Answer]] = []
 
     def poly(polynomial: Polynomial) -> Answer:
-        # Channels share denominators; a long one is written once.
-        key = id(polynomial.element)
-        if key not in written:
-            written[key] = polynomial_answer(polynomial, latex)
-        return written[key]
+        # Most denominators are the characteristic polynomial; a long one is written once.
+        for known, text in written:
+            if known.element == polynomial.element:
+                return text
+        written.append((polynomial, polynomial_answer(polynomial, latex)))
+        return written[-1][1]
 
     answer: Answer = {
         **head_answer("derive", derivation.model),

@@ -6,7 +6,7 @@ from collections import Counter
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from symplant.algebra.text import node_text
+from symplant.algebra.text import node_text, polynomial_text
 from symplant.algebra.verdict import Check, Verdict
 from symplant.derivation.derive import Channel, Derivation, Scaled
 from symplant.writing.page import Page
@@ -18,6 +18,8 @@ if TYPE_CHECKING:
 
 __all__ = ["add_checks", "add_failures", "add_head", "derive_page", "finding_page"]
 
+#: Findings of more terms than this are kept in Python arithmetic.
+PLAIN_LIMIT = 500
 ROLES = {
     Verdict.PROVED: "good",
     Verdict.AGREES: "good",
@@ -46,19 +48,16 @@ def finding_page(finding: Scaled | Channel, width: int = 100, unicode: bool = Tr
     """One finding by itself, for work that is stopped before the rest is there."""
     page = Page(width)
     if isinstance(finding, Scaled):
-        plain = PlainFormulas(finding.polynomial.ring, width - 2, unicode)
-        page.heading("Characteristic polynomial")
-        page.add(
-            plain.polynomial(
-                _name("Δ", finding.polynomial.ring.variable, unicode), finding.polynomial.element
-            )
-        )
-        return page
-    plain = PlainFormulas(finding.numerator.ring, width - 2, unicode)
-    page.heading(f"Numerator of {finding.name}")
-    page.add(
-        plain.polynomial(_name("N", finding.numerator.ring.variable, unicode), finding.numerator.element)
-    )
+        heading, letter, polynomial = "Characteristic polynomial", "Δ", finding.polynomial
+    else:
+        heading, letter, polynomial = f"Numerator of {finding.name}", "N", finding.numerator
+    page.heading(heading)
+    name = _name(letter, polynomial.ring.variable, unicode)
+    if len(polynomial.element) > PLAIN_LIMIT:
+        # Most of these are never shown: a long one is not worth the pains of setting it well.
+        page.add(f"{name} = {polynomial_text(polynomial.ring, polynomial.element)}")
+    else:
+        page.add(PlainFormulas(polynomial.ring, width - 2, unicode).polynomial(name, polynomial.element))
     return page
 
 

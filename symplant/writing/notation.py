@@ -13,6 +13,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Notation"]
 
+#: The LaTeX of elements of so many terms is kept.
+LONG = 500
+
 
 class Notation:
     """Spellings of a plant's names, and formula writers that share them.
@@ -23,6 +26,7 @@ class Notation:
     def __init__(self, model: Model) -> None:
         self.spelling = Spelling(model)
         self._writers: dict[int, FormulaWriter] = {}
+        self._long: list[tuple[Element, str]] = []
 
     def formulas(self, ring: Ring) -> FormulaWriter:
         """The formula writer of a ring."""
@@ -30,4 +34,11 @@ class Notation:
 
     def latex(self, ring: Ring, element: Element) -> str:
         """An element on one line of LaTeX, by falling powers of the variable."""
-        return self.formulas(ring).latex(element)
+        if len(element) < LONG:
+            return self.formulas(ring).latex(element)
+        # Elements cannot be hashed; there are few long ones, and they come again.
+        for known, text in self._long:
+            if known == element:
+                return text
+        self._long.append((element, self.formulas(ring).latex(element)))
+        return self._long[-1][1]
