@@ -168,7 +168,10 @@ def _written(node: Node) -> tuple[str, int]:
         case Product(factors=factors):
             return _product(factors)
         case Quotient(numerator=top, denominator=bottom):
-            return f"{_within(top, _PRODUCT)}/{_within(bottom, _POWER)}", _PRODUCT
+            above, below = _written(top)[0], _within(bottom, _POWER)
+            if above.startswith("-") and not isinstance(top, Sum):
+                return f"{above}/{below}", _SUM  # a sign before a quotient is one before its numerator
+            return f"{_within(top, _PRODUCT)}/{below}", _PRODUCT
         case Power(base=base, exponent=exponent):
             shown = str(exponent) if exponent >= 0 else f"({exponent})"
             return f"{_within(base, _ATOM)}**{shown}", _POWER
