@@ -217,3 +217,16 @@ def test_stages_are_reported() -> None:
     seen: list[str] = []
     stability(_plant([["B - 1", "A**2"], ["-B", "-A**2"]], "A B"), stage=seen.append)
     assert seen[0] == "the characteristic polynomial" and "witnesses" in seen
+
+
+def test_undamped_chains_are_marginal_by_conservation() -> None:
+    A = [["0"] * 6 for _ in range(6)]
+    springs = [["-(k1+k2)/m1", "k2/m1", "0"], ["k2/m2", "-(k2+k3)/m2", "k3/m2"], ["0", "k3/m3", "-k3/m3"]]
+    for i in range(3):
+        A[i][3 + i] = "1"
+        A[3 + i][:3] = springs[i]
+    finding = stability(_plant(A, "m1 m2 m3 k1 k2 k3"))
+    assert finding.verdict == "marginal" and "bounded oscillation" in finding.because
+    # With an unstable spring among them the argument must not be used.
+    A[3][0] = "(k1 - k2)/m1"
+    assert stability(_plant(A, "m1 m2 m3 k1 k2 k3")).verdict == "unstable"

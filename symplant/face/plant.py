@@ -96,19 +96,23 @@ class Plant:
         return DerivationResult(self._derive(), self._writing)
 
     def stability(
-        self, along: str | None = None, fixed: Mapping[str, Fraction | int | str] | None = None
+        self,
+        along: str | None = None,
+        fixed: Mapping[str, Fraction | int | str] | None = None,
+        effort: str = "normal",
     ) -> StabilityResult:
         """The reduced stability conditions over the parameter box.
 
         With `along` a letter's name also the exact intervals of that letter, all others at the values
-        in `fixed` or else nominal.
+        in `fixed` or else nominal.  `effort` ("low", "normal", "high") bounds the work on each condition.
         """
+        from symplant.algebra.effort import EFFORTS
         from symplant.derivation.stability import stability
         from symplant.face.work import Stabilised
 
         derived = self._derive()
         values = {name: Fraction(value) for name, value in (fixed or {}).items()}
-        finding = stability(derived.derivation, along=along, fixed=values)
+        finding = stability(derived.derivation, along=along, fixed=values, effort=EFFORTS[effort])
         return StabilityResult(Stabilised(derived, finding), self._writing)
 
     def zeros(

@@ -20,19 +20,14 @@ from symplant.writing.derive_page import add_checks, add_failures, add_head
 from symplant.writing.numbers import number_text
 from symplant.writing.page import GLUE, Page
 from symplant.writing.plain import PlainFormulas
+from symplant.writing.routh_rows import routh_rows
 
 if TYPE_CHECKING:
-    from symplant.algebra.ratio import Ratio
     from symplant.algebra.ring import Element
     from symplant.derivation.stability.finding import Point
     from symplant.plant.model import Model
 
-__all__ = ["StabilityWriter", "endpoint_text", "routh_rows", "settled_page", "stability_page"]
-
-SPECIAL = {
-    "zero pivot": "zero pivot: the row was replaced by one that has a pivot and the same counts",
-    "zero row": "zero row: replaced by the derivative of the auxiliary polynomial of the row above",
-}
+__all__ = ["StabilityWriter", "endpoint_text", "settled_page", "stability_page"]
 
 #: A condition of more terms is not spelled on the page, which nobody could read; the machine answer has it.
 LONGEST = 1500
@@ -250,33 +245,3 @@ def _values(point: Point) -> str:
     return ", ".join(f"{name}{GLUE}={GLUE}{number_text(value)}" for name, value in point.items()) or (
         "(no parameters)"
     )
-
-
-def routh_rows(finding: StabilityFinding, plain: PlainFormulas) -> list[str]:
-    """The rows of Routh's array as text, the special ones explained."""
-    variable = "w" if finding.discrete else finding.ring.variable
-    rows = finding.routh.rows
-    cells = [[_cell(plain, entry) for entry in row.entries] for row in rows]
-    count = max(len(row) for row in cells)
-    widths = [max((len(row[j]) for row in cells if j < len(row)), default=0) for j in range(count)]
-    narrow = sum(widths) + 3 * count < plain.columns - 8
-    lines = []
-    for row, texts in zip(rows, cells, strict=True):
-        head = f"{variable}^{row.power}"
-        if narrow:
-            texts = [text.center(width) for text, width in zip(texts, widths, strict=False)]
-            lines.append(f"{head:<5} | " + "   ".join(texts).rstrip())
-        else:
-            lines += [f"{head:<5} | {text}" if j == 0 else f"      | {text}" for j, text in enumerate(texts)]
-        if row.kind in SPECIAL:
-            lines.append(f"      | ({SPECIAL[row.kind]})")
-    return lines
-
-
-def _cell(plain: PlainFormulas, entry: Ratio) -> str:
-    top = plain.text(entry.numerator)
-    if entry.denominator.is_one():
-        return top
-    bottom = plain.text(entry.denominator)
-    top = f"({top})" if len(entry.numerator) > 1 else top
-    return f"{top}/({bottom})" if not bottom.isalnum() else f"{top}/{bottom}"

@@ -19,31 +19,52 @@ from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign
 from symplant.derivation.pencil import Pencil
 
-__all__ = ["energy_argument"]
+__all__ = ["conservative_argument", "energy_argument"]
 
 Square: TypeAlias = "list[list[Element]]"
 REASON = (
     "mass and stiffness matrices are symmetric and positive definite and so is the damping: the energy "
     "decreases along every motion (Kelvin, Tait, Chetaev)"
 )
+CONSERVED = (
+    "mass and stiffness matrices are symmetric and positive definite and nothing is dissipated: the energy "
+    "stays as it is, so that every motion is a bounded oscillation"
+)
 
 
 def energy_argument(pencil: Pencil) -> str:
     """The reason why the plant is asymptotically stable in the whole box, "" if the argument fails."""
-    ring = pencil.ring
-    if pencil.model.discrete or ring.has_relations:
-        return ""
-    found = _second_order(pencil)
-    if found is None:
-        return ""
-    scaled = _symmetrised(ring, *found)
-    if scaled is None:
-        return ""
-    mass, damping, stiffness = scaled
-    doubled = [[damping[i][j] + damping[j][i] for j in range(len(damping))] for i in range(len(damping))]
-    if all(_is_positive_definite(ring, matrix) for matrix in (mass, stiffness, doubled)):
+    matrices = _matrices(pencil)
+    if matrices is not None and all(_is_positive_definite(pencil.ring, matrix) for matrix in matrices):
         return REASON
     return ""
+
+
+def conservative_argument(pencil: Pencil) -> str:
+    """The reason why every motion is a bounded oscillation in the whole box, "" if the argument fails."""
+    matrices = _matrices(pencil)
+    if matrices is None:
+        return ""
+    mass, stiffness, dissipation = matrices
+    if any(entry for row in dissipation for entry in row):
+        return ""
+    if all(_is_positive_definite(pencil.ring, matrix) for matrix in (mass, stiffness)):
+        return CONSERVED
+    return ""
+
+
+def _matrices(pencil: Pencil) -> tuple[Square, Square, Square] | None:
+    """Mass, stiffness, and damping plus its transpose, the first two symmetric; None if that fails."""
+    ring = pencil.ring
+    if pencil.model.discrete or ring.has_relations:
+        return None
+    found = _second_order(pencil)
+    scaled = None if found is None else _symmetrised(ring, *found)
+    if scaled is None:
+        return None
+    mass, damping, stiffness = scaled
+    n = len(damping)
+    return mass, stiffness, [[damping[i][j] + damping[j][i] for j in range(n)] for i in range(n)]
 
 
 def _second_order(pencil: Pencil) -> tuple[Square, Square, Square] | None:

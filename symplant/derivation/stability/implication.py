@@ -48,7 +48,9 @@ def _each_needed(subject: Subject, settled: list[Settled]) -> list[Settled]:
     result = list(settled)
     if sum(c.open for c in result) < 2:
         return result
-    for place in _weakest_first(result):
+    # Those at which a root crosses the boundary go last: they are what the engineer asks about.
+    order = sorted(_weakest_first(result), key=lambda i: any(m.event for m in result[i].members))
+    for place in order:
         others = [c.element for i, c in enumerate(result) if c.open and i != place]
         target = result[place]
         if not others or alone(subject, target.element, others) is not None:

@@ -18,7 +18,7 @@ from symplant.derivation.stability.boundary import marginal_conditions, symmetri
 from symplant.derivation.stability.candidates import Candidate, candidates
 from symplant.derivation.stability.cross_check import cross_checks
 from symplant.derivation.stability.crossings import crossings
-from symplant.derivation.stability.energy import energy_argument
+from symplant.derivation.stability.energy import conservative_argument, energy_argument
 from symplant.derivation.stability.finding import (
     Condition,
     Point,
@@ -176,7 +176,8 @@ def _study(
     settled, proof = settle_all(subject, found, stage, argument, report)
     stage(REDUCTION)
     ordinary = reduced(subject, settled)
-    marginal = marginal_conditions(subject, stage) if symmetric else []
+    conserved = conservative_argument(subject.pencil) if symmetric and subject.pencil is not None else ""
+    marginal = marginal_conditions(subject, stage) if symmetric and not conserved else []
     if len(subject.letters) == 1 and line is None:
         line, along = subject, subject.letters[0]
     intervals: tuple[StabilityInterval, ...] = ()
@@ -184,7 +185,9 @@ def _study(
         stage(f"the intervals of {along}")
         intervals, reason = stability_intervals(line, along)
         notes = [*notes, f"no exact intervals: {reason}"] if reason else notes
-    outcome = judge(subject, ordinary, marginal, intervals if line is subject else (), stage, proof)
+    outcome = judge(
+        subject, ordinary, marginal, intervals if line is subject else (), stage, proof, conserved
+    )
     below = lower_subject(subject) if depth < CASES else None
     cases = (
         (SpecialCase(below[0], _study(below[1], None, None, fixed, stage, [], depth + 1)),) if below else ()

@@ -34,10 +34,12 @@ def judge(
     intervals: Sequence[StabilityInterval],
     stage: Callable[[str], None],
     proof: str = "",
+    conserved: str = "",
 ) -> Outcome:
     """The verdict over the box.
 
-    `proof` is the reason if all conditions were proved at once; `intervals` are given if there is one
+    `proof` is the reason if all conditions were proved at once, `conserved` the one why all roots lie on
+    the boundary without harm; `intervals` are given if there is one
     letter in all and they are exact.
     """
     nothing: dict[str, Point | None] = {"stable": None, "unstable": None}
@@ -45,6 +47,9 @@ def judge(
         return Outcome("stable", "there are no finite poles: nothing can grow", nothing)
     symmetric = [part for part in subject.parts if part.symmetric]
     never = [c for c in ordinary if c.status == "never"]
+    if conserved and not ordinary:
+        why = [symmetric_sentence(subject, part) for part in symmetric]
+        return _nowhere("marginal", [*why, conserved], find_point(subject, [], {"axis"}))
     if symmetric or never:
         return _never_stable(subject, ordinary, marginal, stage)
     if not any(c.open for c in ordinary):
