@@ -10,6 +10,7 @@ from symplant.derivation.stability.finding import (
     StabilityFinding,
     StabilityInterval,
 )
+from symplant.derivation.stability.margins import Margins
 from symplant.derivation.stability.plane import PlaneCell, StabilityPlane, stability_plane
 from symplant.derivation.stability.study import stability, stability_of
 
@@ -18,6 +19,7 @@ __all__ = [
     "Condition",
     "Crossing",
     "Endpoint",
+    "Margins",
     "PlaneCell",
     "SettledCondition",
     "SpecialCase",

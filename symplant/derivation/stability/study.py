@@ -30,6 +30,7 @@ from symplant.derivation.stability.finding import (
 from symplant.derivation.stability.fixing import fixed_model, values_along
 from symplant.derivation.stability.implication import reduced
 from symplant.derivation.stability.intervals import stability_intervals
+from symplant.derivation.stability.margins import Margins
 from symplant.derivation.stability.settling import Settled, settle_all
 from symplant.derivation.stability.solving import condition_of
 from symplant.derivation.stability.subject import Subject, restricted, subject_of
@@ -43,6 +44,9 @@ Source: TypeAlias = Model | Pencil | Derivation
 #: How often a vanishing leading coefficient is followed by the next one.
 CASES = 2
 REDUCTION, WITNESSES = "what follows from what", "witnesses"
+
+
+NO_MARGINS = Margins()
 
 
 def _quiet(name: str) -> None:
@@ -62,6 +66,7 @@ def stability(
     effort: Effort = NORMAL,
     found: Callable[[SettledCondition], None] = _unheard,
     plan: Callable[[list[str]], None] = _unheard,
+    margins: Margins = NO_MARGINS,
 ) -> StabilityFinding:
     """Stability of a plant over its parameter box.
 
@@ -69,11 +74,13 @@ def stability(
     nominal; the rest of the answer is about the whole box.  With one letter in all the intervals come
     by themselves.  Without `along`, letters in `fixed` have these values throughout.  `stage` is told
     what is being worked on; `effort` bounds the work on each condition; `found` is handed each
-    condition when it is settled, and `plan` the stages to come when they are known.
+    condition when it is settled, and `plan` the stages to come when they are known.  With `margins` all
+    of the answer is about more than stability: poles left of a line, in a circle, in a sector.
 
     Errors: InputError for unknown letters, letters without nominal value, and singular pencils.
     """
     values = dict(fixed or {})
+    margins.check((source if isinstance(source, Model) else source.model).discrete)
     model = source if isinstance(source, Model) else source.model
     stage("the characteristic polynomial")
     line: Subject | None = None
@@ -97,7 +104,10 @@ def stability(
         )
     if outside:
         notes.append(f"fixed outside its range: {', '.join(outside)}")
-    return _study(subject, along, line, values, stage, notes, 0, found, plan)
+    subject = margins.applied(subject)
+    line = None if line is None else margins.applied(line)
+    finding = _study(subject, along, line, values, stage, notes, 0, found, plan)
+    return margins.told(finding)
 
 
 def stability_of(
