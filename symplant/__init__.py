@@ -11,7 +11,7 @@ from symplant.version import __version__
 
 if TYPE_CHECKING:
     from symplant.errors import BudgetError, CheckError, Fault, InputError, SymplantError, UndecidedError
-    from symplant.face import Plant
+    from symplant.face.plant import Plant
 
 __all__ = [
     "BudgetError",
@@ -27,7 +27,7 @@ __all__ = [
 
 def __getattr__(name: str) -> object:
     if name == "Plant":
-        from symplant.face import Plant
+        from symplant.face.plant import Plant
 
         return Plant
     if name in __all__:

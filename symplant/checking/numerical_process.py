@@ -57,6 +57,12 @@ class NumericalProcess:
         os.close(answers)
         self._end = weakref.finalize(self, _ended, self.pid, parent, self._requests, self._answers)
 
+    def __enter__(self) -> NumericalProcess:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        self.close()
+
     def ask(self, request: str, patience: float = 120.0) -> str:
         """The answer to a request.
 

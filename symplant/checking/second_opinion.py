@@ -169,8 +169,9 @@ class SecondOpinion:
     []
     """
 
-    def __init__(self) -> None:
-        self._process: NumericalProcess | None = None
+    def __init__(self, process: NumericalProcess | None = None) -> None:
+        """`process` is one that was started before anything else; it is closed with this."""
+        self._process = process
         self._request = Request()
         self._checks: list[Check] | None = None
 

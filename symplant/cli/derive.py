@@ -44,10 +44,9 @@ def derive(
     width, unicode, colour = page_width(), speaks_unicode(), wants_colour()
 
     def work(channel: Channel) -> int:
-        from symplant.checking.second_opinion import SecondOpinion
+        from symplant.checking.numerical_process import NumericalProcess
 
-        with SecondOpinion() as opinion:
-            opinion.start()  # first of all: its libraries take as long to load as everything else
+        with NumericalProcess() as numerics:  # first of all: its libraries load slowly
             from symplant.face.work import derive_and_check, derive_plan
             from symplant.reading.plant_file import read_plant_file
             from symplant.writing.notation import Notation
@@ -56,7 +55,7 @@ def derive(
             notation = Notation(model)
             channel.plan(derive_plan(model))
             keeper = Keeper(channel, notation, as_json, width, unicode)
-            derived = derive_and_check(model, opinion, channel.stage, keeper.found)
+            derived = derive_and_check(model, numerics, channel.stage, keeper.found)
         if as_json:
             from symplant.writing.answer import derive_answer
 

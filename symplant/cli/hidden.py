@@ -39,10 +39,9 @@ def hidden(
     width, unicode, colour = page_width(), speaks_unicode(), wants_colour()
 
     def work(channel: Channel) -> int:
-        from symplant.checking.second_opinion import SecondOpinion
+        from symplant.checking.numerical_process import NumericalProcess
 
-        with SecondOpinion() as opinion:
-            opinion.start()
+        with NumericalProcess() as numerics:  # first of all: its libraries load slowly
             from symplant.face.zeros_work import hidden_and_check, hidden_plan
             from symplant.reading.plant_file import read_plant_file
             from symplant.writing.notation import Notation
@@ -51,7 +50,7 @@ def hidden(
             notation = Notation(model)
             channel.plan(hidden_plan(model))
             keeper = Keeper(channel, notation, as_json, width, unicode)
-            found = hidden_and_check(model, opinion, channel.stage, keeper.found)
+            found = hidden_and_check(model, numerics, channel.stage, keeper.found)
         if as_json:
             from symplant.writing.hidden_answer import hidden_answer
 

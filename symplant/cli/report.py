@@ -39,10 +39,9 @@ def report(
     width, unicode = page_width(), speaks_unicode()
 
     def work(channel: Channel) -> int:
-        from symplant.checking.second_opinion import SecondOpinion
+        from symplant.checking.numerical_process import NumericalProcess
 
-        with SecondOpinion() as opinion:
-            opinion.start()
+        with NumericalProcess() as numerics:  # first of all: its libraries load slowly
             from symplant.face.work import derive_plan, stability_and_check
             from symplant.reading.plant_file import read_plant_file
             from symplant.writing.files import require_folder_target
@@ -52,7 +51,7 @@ def report(
             model = read_plant_file(plant)
             channel.plan([*derive_plan(model, stability=True), "the read-back", "the files"])
             keeper = Keeper(channel, Notation(model), as_json, width, unicode)
-            found = stability_and_check(model, opinion, channel.stage, keeper.found)
+            found = stability_and_check(model, numerics, channel.stage, keeper.found)
         from symplant.writing.report import compose_report, write_report
 
         channel.stage("the read-back")

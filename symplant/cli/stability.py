@@ -86,10 +86,9 @@ def stability(
         return show_plane(channel, model, plane, picture, fixed, as_json, width, unicode, colour)
 
     def work(channel: Channel) -> int:
-        from symplant.checking.second_opinion import SecondOpinion
+        from symplant.checking.numerical_process import NumericalProcess
 
-        with SecondOpinion() as opinion:
-            opinion.start()
+        with NumericalProcess() as numerics:  # first of all: its libraries load slowly
             from symplant.face.work import derive_plan, stability_and_check
             from symplant.reading.plant_file import read_plant_file
             from symplant.writing.notation import Notation
@@ -100,7 +99,7 @@ def stability(
             channel.plan(derive_plan(model, stability=True))
             keeper = Keeper(channel, notation, as_json, width, unicode)
             found = stability_and_check(
-                model, opinion, channel.stage, keeper.found, along, values, effort, channel.plan
+                model, numerics, channel.stage, keeper.found, along, values, effort, channel.plan
             )
         if as_json:
             from symplant.writing.answer import stability_answer

@@ -50,10 +50,9 @@ def zeros(
     width, unicode, colour = page_width(), speaks_unicode(), wants_colour()
 
     def work(channel: Channel) -> int:
-        from symplant.checking.second_opinion import SecondOpinion
+        from symplant.checking.numerical_process import NumericalProcess
 
-        with SecondOpinion() as opinion:
-            opinion.start()
+        with NumericalProcess() as numerics:  # first of all: its libraries load slowly
             from symplant.face.zeros_work import check_names, zeros_and_check, zeros_plan
             from symplant.reading.plant_file import read_plant_file
             from symplant.writing.notation import Notation
@@ -64,7 +63,7 @@ def zeros(
             channel.plan(zeros_plan(model, along))
             keeper = ZerosKeeper(channel, notation, as_json, width, unicode)
             found = zeros_and_check(
-                model, opinion, channel.stage, keeper.found, keeper.part, along, output, input_
+                model, numerics, channel.stage, keeper.found, keeper.part, along, output, input_
             )
         if as_json:
             from symplant.writing.zeros_answer import zeros_answer

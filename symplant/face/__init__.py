@@ -1,5 +1,4 @@
-"""The Python face: a plant, and results that carry the names of the machine answers."""
+"""The Python face: a plant, and results that carry the names of the machine answers.
 
-from symplant.face.plant import Plant
-
-__all__ = ["Plant"]
+Commands use `work` alone, so nothing is imported here.
+"""

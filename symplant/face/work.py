@@ -11,7 +11,7 @@ from symplant.algebra.verdict import Check
 from symplant.derivation.derive import Channel, Derivation, Scaled, derive, derive_stages
 
 if TYPE_CHECKING:
-    from symplant.checking.second_opinion import SecondOpinion
+    from symplant.checking.numerical_process import NumericalProcess
     from symplant.checking.substitution import Substitution
     from symplant.derivation.stability import SettledCondition, StabilityFinding
     from symplant.plant.model import Model
@@ -65,20 +65,19 @@ def derive_plan(model: Model, stability: bool = False) -> list[str]:
 
 def derive_and_check(
     model: Model,
-    opinion: SecondOpinion | None = None,
+    numerics: NumericalProcess | None = None,
     stage: Stage = lambda name: None,
     found: Callable[[Scaled | Channel], None] = lambda finding: None,
 ) -> Derived:
     """Derive everything, then check it: both routes, exact substitution, numerical second opinion.
 
-    `opinion` is a second opinion that was started before (its numerical libraries load in a process of
-    their own meanwhile); left out, one is started here.
+    `numerics` is the process of the second opinion if it was started before (its libraries load slowly);
+    left out, one is started here.
     """
     from symplant.checking.second_opinion import SecondOpinion, second_opinion_request
     from symplant.checking.substitution import check_by_substitution
 
-    with opinion or SecondOpinion() as second:
-        second.start()
+    with SecondOpinion(numerics) as second:
         derivation = derive(model, stage, found)
         second.ask(second_opinion_request(derivation))
         stage(SUBSTITUTION)
@@ -91,19 +90,23 @@ def derive_and_check(
 
 def stability_and_check(
     model: Model,
-    opinion: SecondOpinion | None = None,
+    numerics: NumericalProcess | None = None,
     stage: Stage = lambda name: None,
     found: Callable[[Scaled | Channel | SettledCondition], None] = lambda finding: None,
     along: str | None = None,
     fixed: Mapping[str, Fraction] | None = None,
     effort: str = "normal",
     plan: Callable[[list[str]], None] = lambda names: None,
+    decay: Fraction | None = None,
+    damping: Fraction | None = None,
 ) -> Stabilised:
     """Derive and check, then reduce the stability conditions; see `derivation.stability.stability`."""
     from symplant.algebra.effort import EFFORTS
-    from symplant.derivation.stability import stability
+    from symplant.derivation.stability import Margins, stability
 
-    derived = derive_and_check(model, opinion, stage, found)
+    margins = Margins(decay, damping)
+    margins.check(model.discrete)
+    derived = derive_and_check(model, numerics, stage, found)
     finding = stability(
         derived.derivation,
         along=along,
@@ -112,5 +115,6 @@ def stability_and_check(
         effort=EFFORTS[effort],
         found=found,
         plan=lambda names: plan([*derive_plan(model), *names]),
+        margins=margins,
     )
     return Stabilised(derived, finding)

@@ -14,7 +14,7 @@ from symplant.errors import Fault, InputError
 from symplant.face.work import Derived, derive_and_check, derive_plan
 
 if TYPE_CHECKING:
-    from symplant.checking.second_opinion import SecondOpinion
+    from symplant.checking.numerical_process import NumericalProcess
     from symplant.derivation.derive import Channel, Scaled
     from symplant.plant.model import Model
 
@@ -120,7 +120,7 @@ def hidden_plan(model: Model) -> list[str]:
 
 def zeros_and_check(
     model: Model,
-    opinion: SecondOpinion | None = None,
+    numerics: NumericalProcess | None = None,
     stage: Stage = lambda name: None,
     found: Callable[[Scaled | Channel], None] = lambda finding: None,
     part: Callable[[ZerosStudy, str], None] = lambda study, name: None,
@@ -129,7 +129,7 @@ def zeros_and_check(
     input: str | None = None,
 ) -> ZerosWork:
     """Derive and check, then study the zeros; see `derivation.zeros.study.study_zeros`."""
-    return zeros_of(derive_and_check(model, opinion, stage, found), stage, part, along, output, input)
+    return zeros_of(derive_and_check(model, numerics, stage, found), stage, part, along, output, input)
 
 
 def zeros_of(
@@ -146,12 +146,12 @@ def zeros_of(
 
 def hidden_and_check(
     model: Model,
-    opinion: SecondOpinion | None = None,
+    numerics: NumericalProcess | None = None,
     stage: Stage = lambda name: None,
     found: Callable[[Scaled | Channel], None] = lambda finding: None,
 ) -> HiddenWork:
     """Derive and check, then look for hidden modes; see `derivation.zeros.hidden.hidden_modes`."""
-    return hidden_of(derive_and_check(model, opinion, stage, found), stage)
+    return hidden_of(derive_and_check(model, numerics, stage, found), stage)
 
 
 def hidden_of(derived: Derived, stage: Stage = lambda name: None) -> HiddenWork:

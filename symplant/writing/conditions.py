@@ -3,16 +3,19 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from symplant.algebra.box import Sign
 from symplant.algebra.expression import Node, integer
 from symplant.algebra.factors import factors
 from symplant.algebra.ring import Element, Ring
 from symplant.algebra.sign_pattern import factored_sign, pattern_sign
-from symplant.writing.display import Formula, two_sided
 from symplant.writing.element_trees import ElementTrees
-from symplant.writing.formula import FormulaWriter
 from symplant.writing.squares import swapped
+
+if TYPE_CHECKING:
+    from symplant.writing.display import Formula
+    from symplant.writing.formula import FormulaWriter
 
 __all__ = ["Condition", "Statement", "condition", "statement"]
 
@@ -56,6 +59,7 @@ def condition(
 ) -> Condition:
     r"""The condition `element relation 0` in LaTeX, in the form that reads best (see `statement`).
 
+    >>> from symplant.writing.formula import FormulaWriter
     >>> from symplant.writing.spelling import Spelling
     >>> ring = Ring("s", ("k", "m"))
     >>> writer = FormulaWriter(ring, Spelling.of("s", {"k": "k", "m": "m"}))
@@ -66,6 +70,8 @@ def condition(
     """
     found = statement(writer.trees, element, relation, isolate)
     write = writer.writer.text
+    from symplant.writing.display import two_sided  # LaTeX only: the terminal does without
+
     formula = two_sided(found.left, _LATEX[found.relation], found.right, writer.writer, writer.room)
     return Condition(write(found.left), found.relation, write(found.right), found.difference, formula)
 

@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from typing import TYPE_CHECKING
-
-from symplant.writing.formula import FormulaWriter
-from symplant.writing.spelling import Spelling
 
 if TYPE_CHECKING:
     from symplant.algebra.ring import Element, Ring
     from symplant.plant.model import Model
+    from symplant.writing.formula import FormulaWriter
+    from symplant.writing.spelling import Spelling
 
 __all__ = ["Notation"]
 
@@ -20,16 +20,25 @@ LONG = 500
 class Notation:
     """Spellings of a plant's names, and formula writers that share them.
 
-    Errors: InputError where two names have the same spelling.
+    Nothing is loaded before the first formula is written: pages for the terminal do without LaTeX.
     """
 
     def __init__(self, model: Model) -> None:
-        self.spelling = Spelling(model)
+        self._model = model
         self._writers: dict[int, FormulaWriter] = {}
         self._long: list[tuple[Element, str]] = []
 
+    @cached_property
+    def spelling(self) -> Spelling:
+        """The LaTeX spellings; InputError where two names have the same one."""
+        from symplant.writing.spelling import Spelling
+
+        return Spelling(self._model)
+
     def formulas(self, ring: Ring) -> FormulaWriter:
         """The formula writer of a ring."""
+        from symplant.writing.formula import FormulaWriter
+
         return self._writers.setdefault(id(ring), FormulaWriter(ring, self.spelling))
 
     def latex(self, ring: Ring, element: Element) -> str:
