@@ -14,6 +14,7 @@ from symplant.derivation.stability import Margins, StabilityFinding, stability
 from symplant.errors import InputError
 from symplant.plant.model import Model
 from symplant.reading.arguments import model_from_arguments
+from symplant.writing.stability_page import stability_page
 
 
 def _plant(A: Any, letters: str, **more: Any) -> Model:
@@ -37,14 +38,17 @@ def test_an_oscillator_that_decays_fast_enough() -> None:
     # s -> s - 1/2: m s^2 + (c - m) s + k - c/2 + m/4.
     finding = stability(OSCILLATOR, margins=Margins(decay=Fraction(1, 2)))
     assert _binding(finding) == {"-m + c", "m - 2*c + 4*k"}
-    assert "left of Re s = -1/2" in finding.because
+    assert "left of Re s = -1/2" in finding.asked
 
 
 def test_an_oscillator_that_is_damped_well_enough() -> None:
     # The damping ratio of a pair is c / (2 sqrt(k m)): above 1/2 exactly where c^2 > k m.
     finding = stability(OSCILLATOR, margins=Margins(damping=Fraction(1, 2)))
     assert _binding(finding) == {"-m*k + c**2"}
-    assert "damping ratio" in finding.because
+    assert "damping ratio" in finding.asked
+    page = stability_page(finding, OSCILLATOR).plain()
+    assert "damping ratio of every pole above 1/2" in page and "The margin is kept exactly where" in page
+    assert "a pair of roots reaches the margin" in page and "stability is lost" not in page.lower()
     assert all(c.frequency_squared is None for c in finding.crossings)
 
 
@@ -60,10 +64,11 @@ def test_an_oscillator_that_is_damped_well_enough() -> None:
 def test_against_numerical_poles(model: Model, margins: Margins) -> None:
     finding = stability(model, margins=margins)
     ring, random, seen = finding.ring, Random(5), set()
+    characteristic = stability(model).polynomial.coefficients[::-1]
     for _ in range(400):
         point = {name: Fraction(random.randint(1, 60), random.randint(5, 30)) for name in model.letters}
         holds = all(ring.value(c.element, point) > 0 for c in finding.conditions if c.status != "implied")
-        poles = np.roots([float(ring.value(c, point)) for c in _characteristic(model)[::-1]])
+        poles = np.roots([float(ring.value(c, point)) for c in characteristic])
         if margins.damping is not None:
             margin = max(s.real + float(margins.damping) * abs(s) for s in poles)
         elif model.discrete:
@@ -74,10 +79,6 @@ def test_against_numerical_poles(model: Model, margins: Margins) -> None:
             assert holds == (margin < 0), point
             seen.add(holds)
     assert seen == {True, False}
-
-
-def _characteristic(model: Model) -> Any:
-    return stability(model).polynomial.coefficients
 
 
 def test_faults_of_margins_are_told_together() -> None:

@@ -10,7 +10,7 @@ from symplant.errors import Fault
 if TYPE_CHECKING:
     from symplant.plant.model import Model
 
-__all__ = ["fixed_values", "unknown_parameter"]
+__all__ = ["fixed_values", "margin_value", "unknown_parameter"]
 
 
 def fixed_values(model: Model, texts: tuple[str, ...], faults: list[Fault]) -> dict[str, Fraction]:
@@ -27,6 +27,17 @@ def fixed_values(model: Model, texts: tuple[str, ...], faults: list[Fault]) -> d
         except (ValueError, ZeroDivisionError):
             faults.append(Fault("--set", f"{value!r} is not a number", "write NAME=VALUE, for example k=1.5"))
     return values
+
+
+def margin_value(option: str, text: str | None, faults: list[Fault]) -> Fraction | None:
+    """A number given with an option, None if it was left out; what is wrong is added to `faults`."""
+    if text is None:
+        return None
+    try:
+        return Fraction(text.strip())
+    except (ValueError, ZeroDivisionError):
+        faults.append(Fault(option, f"{text!r} is not a number", "write it as 0.5 or 1/2"))
+        return None
 
 
 def unknown_parameter(model: Model, option: str, name: str) -> Fault:

@@ -50,6 +50,12 @@ __all__ = ["stability"]
     help="With --along or --plane: another value than nominal.",
 )
 @click.option(
+    "--decay",
+    metavar="SIGMA",
+    help="Ask for every pole left of -SIGMA; in discrete time within the radius SIGMA.",
+)
+@click.option("--damping", metavar="ZETA", help="Ask for a damping ratio above ZETA of every pole.")
+@click.option(
     "--effort",
     type=click.Choice(["low", "normal", "high"]),
     default="normal",
@@ -65,6 +71,8 @@ def stability(
     plane: tuple[str, str] | None,
     picture: Path | None,
     fixed: tuple[str, ...],
+    decay: str | None,
+    damping: str | None,
     effort: str,
     routh: bool,
     max_seconds: float | None,
@@ -95,11 +103,11 @@ def stability(
 
             model = read_plant_file(plant)
             notation = Notation(model)
-            values = _values(model, along, fixed)
+            values, asked = _values(model, along, fixed, decay, damping)
             channel.plan(derive_plan(model, stability=True))
             keeper = Keeper(channel, notation, as_json, width, unicode)
             found = stability_and_check(
-                model, numerics, channel.stage, keeper.found, along, values, effort, channel.plan
+                model, numerics, channel.stage, keeper.found, along, values, effort, channel.plan, *asked
             )
         if as_json:
             from symplant.writing.answer import stability_answer
@@ -119,9 +127,11 @@ def stability(
     sys.exit(session.run(region if plane or picture else work))
 
 
-def _values(model: Model, along: str | None, fixed: tuple[str, ...]) -> dict[str, Fraction]:
-    """The values given with --set, and that --along names a parameter; all faults at once."""
-    from symplant.cli.fixed_values import fixed_values, unknown_parameter
+def _values(
+    model: Model, along: str | None, fixed: tuple[str, ...], decay: str | None, damping: str | None
+) -> tuple[dict[str, Fraction], tuple[Fraction | None, Fraction | None]]:
+    """The values given with --set, and the margins asked for; all faults at once."""
+    from symplant.cli.fixed_values import fixed_values, margin_value, unknown_parameter
 
     faults: list[Fault] = []
     if along is not None and along not in model.letters:
@@ -129,6 +139,7 @@ def _values(model: Model, along: str | None, fixed: tuple[str, ...]) -> dict[str
     values = fixed_values(model, fixed, faults)
     if fixed and along is None:
         faults.append(Fault("--set", "is for --along and --plane only", "add --along NAME or --plane X Y"))
+    asked = margin_value("--decay", decay, faults), margin_value("--damping", damping, faults)
     if faults:
         raise InputError(faults)
-    return values
+    return values, asked

@@ -156,6 +156,7 @@ def stability_finding_answer(finding: StabilityFinding, latex: Latex) -> Answer:
     return {
         "verdict": str(finding.verdict),
         "because": finding.because,
+        "asked": finding.asked or "stability",
         "conditions": [condition_answer(ring, condition, latex) for condition in finding.conditions],
         "crossings": [
             {

@@ -17,8 +17,20 @@ AT = {
 }
 
 
-def crossing_words(crossing: Crossing) -> str:
-    """What happens to the roots there, as the rest of a sentence."""
+MARGIN = {
+    "origin": "a real root reaches the margin",
+    "imaginary pair": "a pair of roots reaches the margin",
+    "infinity": "a root passes through infinity",
+    "z = 1": "a positive real root reaches the margin",
+    "z = -1": "a negative real root reaches the margin",
+    "complex pair": "a complex pair of roots reaches the margin",
+}
+
+
+def crossing_words(crossing: Crossing, margin: bool = False) -> str:
+    """What happens to the roots there, as the rest of a sentence; `margin`: a margin stands for stability."""
+    if margin:
+        return MARGIN[crossing.detail or crossing.at]
     if crossing.at != "unit circle" or not crossing.detail:
         return AT[crossing.at]
     if "pair" in crossing.detail:

@@ -46,6 +46,21 @@ _HEADINGS: dict[str, tuple[str, str, str, dict[str, str]]] = {
         "Minimum phase along ",
         {"stable": "minimum phase", "unstable": "not minimum phase", "marginal": "at the boundary"},
     ),
+    "margin": (
+        "The margin is kept exactly where, within the ranges and signs declared,",
+        "The margin is lost where",
+        "The margin along ",
+        {"stable": "kept", "unstable": "not kept", "marginal": "at the margin"},
+    ),
+}
+
+#: The verdicts where a margin was asked for.
+MARGIN = {
+    "stable": "THE MARGIN IS KEPT for every admissible value of the parameters",
+    "unstable": "THE MARGIN IS NOT KEPT for any admissible value of the parameters",
+    "marginal": "AT THE MARGIN for every admissible value of the parameters",
+    "conditional": "CONDITIONAL: the margin is kept for some admissible values, not for others",
+    "undecided": "UNDECIDED over the whole parameter box",
 }
 
 VERDICTS = {
@@ -71,10 +86,13 @@ def stability_page(
     add_head(page, model)
     page.heading("Verdict")
     words, role = VERDICTS[finding.verdict]
+    if finding.asked:
+        page.add(f"asked: {finding.asked}")
+        words = MARGIN[finding.verdict]
     page.add(words, role)
     if finding.because:
         page.rows([("", finding.because)], indent=0)
-    writer = StabilityWriter(finding, page, unicode)
+    writer = StabilityWriter(finding, page, unicode, "margin" if finding.asked else "stability")
     writer.conditions()
     writer.crossings()
     writer.intervals()
@@ -172,7 +190,7 @@ class StabilityWriter:
         whole = crossing.element
         left = f"({_too_long(whole)})" if len(whole) > LONGEST else self.plain.factored("", whole)
         self.page.add(f"{left} = 0")
-        self.page.add(crossing_words(crossing), "quiet", 4)
+        self.page.add(crossing_words(crossing, bool(self.finding.asked)), "quiet", 4)
         ratio = crossing.frequency_squared
         if ratio is not None and len(ratio.numerator) + len(ratio.denominator) <= LONGEST:
             name = "ω²" if self.unicode else "omega^2"

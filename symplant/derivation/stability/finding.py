@@ -117,7 +117,8 @@ class StabilityFinding:
     `polynomial` was tested; it is asymptotically stable exactly where all conditions with the status
     required or undecided hold in the box.  `marginal_conditions` is filled where some roots lie
     symmetric to the boundary whatever the letters are: the plant is marginal where they hold.
-    `witnesses` has the keys "stable" and "unstable": values for every letter, or None.
+    `witnesses` has the keys "stable" and "unstable": values for every letter, or None.  `asked` names
+    the margin if more than stability was asked of the roots; "stable" then means that it is kept.
     """
 
     ring: Ring
@@ -134,6 +135,7 @@ class StabilityFinding:
     special_cases: tuple[SpecialCase, ...] = ()
     notes: tuple[str, ...] = ()
     checks: tuple[Check, ...] = ()
+    asked: str = ""
 
     @property
     def binding(self) -> tuple[Condition, ...]:

@@ -54,10 +54,10 @@ class Margins:
     def words(self, discrete: bool) -> str:
         """What is asked, as a sentence."""
         if self.damping is not None:
-            return f"asked here: damping ratio of every pole above {self.damping}"
+            return f"damping ratio of every pole above {self.damping}"
         if discrete:
-            return f"asked here: every pole within the circle |z| = {self.decay}"
-        return f"asked here: every pole left of Re s = -{self.decay}"
+            return f"every pole within the circle |z| = {self.decay}"
+        return f"every pole left of Re s = -{self.decay}"
 
     def applied(self, subject: Subject) -> Subject:
         """The subject whose stability is what is asked; multiple roots on the boundary are not judged."""
@@ -74,14 +74,14 @@ class Margins:
         return replace(subject, polynomial=moved, pencil=None)
 
     def told(self, finding: StabilityFinding) -> StabilityFinding:
-        """The finding with what was asked in front of the reason; frequencies on a sector are left out."""
+        """The finding with what was asked; frequencies on a sector are left out."""
         if not self:
             return finding
         words = self.words(finding.discrete)
         found = finding.crossings
         if self.damping is not None:
             found = tuple(Crossing(c.element, c.at, None, c.detail) for c in found)
-        return replace(finding, because=f"{words}; {finding.because}", crossings=found)
+        return replace(finding, asked=words, crossings=found)
 
 
 def _line(polynomial: Polynomial, sigma: Fraction) -> Element:
