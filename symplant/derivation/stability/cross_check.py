@@ -57,8 +57,10 @@ def _at_points(subject: Subject, settled: Sequence[Settled]) -> Check | None:
     letters = letters_in(ring, [subject.polynomial.element, *subject.nonzero, subject.content])
     elements = [c.element for c in settled if c.open]
     never = any(c.status == "never" for c in settled)
+    size = max(sum(len(element) for element in elements), 1)
+    most = min(POINTS if letters else 1, max(1, subject.effort.exact_terms // (4 * size)))
     met = 0
-    for point in points(ring.box, letters, subject.nominal or {}, POINTS if letters else 1):
+    for point in points(ring.box, letters, subject.nominal or {}, most):
         if not respects(ring, [*subject.nonzero, subject.content], point):
             continue
         second = _second_opinion(subject, point)
