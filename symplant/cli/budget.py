@@ -58,9 +58,9 @@ def run_supervised(
     on_stop: called with (finished, unfinished, reason, kept) when the work is stopped; its result goes
         to standard output in place of the kept parts (for an answer that must be one JSON document)
 
-    Status besides the job's own: 2 an InputError left the job; 3 a budget ran out, or the worker was
+    Status besides the job's own: 2 an InputError left the job; 3 a budget ran out, Ctrl-C, or the worker was
     lost; 70 an unexpected exception (one sentence; a traceback with SYMPLANT_TRACEBACK=1 in the
-    environment); 74 standard output cannot be written; 128 + n ended by signal n (Ctrl-C: 130), or by
+    environment); 74 standard output cannot be written; 128 + n ended by another signal n, or by
     the reader of a pipe who left (141). Finished parts are put out and the rest is named in every case.
 
     Whatever happens to this process, SIGKILL included, no process of the work goes on and no staging

@@ -19,7 +19,7 @@ __all__ = ["main", "symplant"]
 @click.group(
     context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
     epilog="Exit status: 0 done; 1 a claim is refuted or a check fails; 2 the input is at fault; "
-    "3 stopped by a budget.",
+    "3 stopped by a budget or by Ctrl-C.",
 )
 @click.version_option(__version__, message="symplant %(version)s")
 def symplant() -> None:

@@ -61,11 +61,14 @@ def out_of_memory(limit: int | None) -> Stop:
 def interrupted(number: int) -> Stop:
     """Somebody asked for an end by a signal.
 
+    Ctrl-C is a budget that runs out in somebody's head: the same parts are put out, with the same status.
+
     >>> interrupted(signal.SIGINT)
-    Stop(status=130, reason='interrupted', quiet=False)
+    Stop(status=3, reason='interrupted', quiet=False)
     """
-    reason = "interrupted" if number == signal.SIGINT else f"stopped by {_signal_name(number)}"
-    return Stop(128 + number, reason)
+    if number == signal.SIGINT:
+        return Stop(_STOPPED, "interrupted")
+    return Stop(128 + number, f"stopped by {_signal_name(number)}")
 
 
 def diagnose(ledger: Ledger, wait_status: int, chatter: bytes, limit: int | None, peak: int) -> Stop:
