@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from stability_subjects import POSITIVE, plant
 
 from symplant.algebra.box import Box, Interval, Sign
 from symplant.algebra.enclosure import certified_sign
@@ -16,20 +17,6 @@ from symplant.algebra.polynomial import Polynomial
 from symplant.algebra.ring import Ring
 from symplant.derivation.stability import stability, stability_of
 from symplant.derivation.stability.witnesses import classify
-from symplant.plant.model import Model
-from symplant.reading.arguments import model_from_arguments
-
-POSITIVE = Interval(declared=Sign.POSITIVE)
-
-
-def _plant(A: Any, letters: str = "", parameters: Any = None, **more: Any) -> Model:
-    """A plant of which only the dynamics matter; all letters positive unless told otherwise."""
-    n = len(A)
-    table = {name: {"sign": "positive"} for name in letters.split()} | (parameters or {})
-    rows = [[str(entry) for entry in row] for row in A]
-    return model_from_arguments(
-        rows, [["1"]] + [["0"]] * (n - 1), [["1"] + ["0"] * (n - 1)], parameters=table, **more
-    )
 
 
 def _random_box(random: Random, letters: str) -> Box:
@@ -101,7 +88,7 @@ def test_plants_agree_with_eigenvalues(seed: int) -> None:
     A = [[random.choice(texts) for _ in range(n)] for _ in range(n)]
     for i in range(n):
         A[i][i] = random.choice(["-a", "-2*b", "-a - b", "-3", "a - b"])
-    model = _plant(A, "a b")
+    model = plant(A, "a b")
     finding = stability(model)
     for _ in range(40):
         a, b = Fraction(random.randint(1, 60), random.randint(1, 9)), Fraction(random.randint(1, 60), 7)
