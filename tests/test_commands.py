@@ -93,7 +93,12 @@ FAULTS = {
     "wrong shape": ('C = [["1", "0"]]', 'C = [["1"]]', "matrices.C", "1 x 2 is needed"),
     "unknown key": ("[matrices]", "[matrices]\nF = 1", "matrices.F", "unknown key"),
     "bad TOML": ("[matrices]", "[matrices", "line", ""),
-    "range ends swapped": ('k = { sign = "positive" }', "k = { range = [3, 1] }", "parameters.k.range", "above"),
+    "range ends swapped": (
+        'k = { sign = "positive" }',
+        "k = { range = [3, 1] }",
+        "parameters.k.range",
+        "above",
+    ),
     "nominal outside": (
         'k = { sign = "positive" }',
         "k = { range = [1, 3], nominal = 4 }",

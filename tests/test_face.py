@@ -92,7 +92,7 @@ def test_names_are_lazy():
 
 def test_rings_with_functions_give_sympy_functions():
     alpha = sympy.Symbol("alpha", real=True)
-    plant = Plant([[-sympy.sin(alpha) ** 2 - sympy.cos(alpha) ** 2]], [[sympy.sqrt(k / m)]], [[1]])
+    plant = Plant([[-(sympy.sin(alpha) ** 2) - sympy.cos(alpha) ** 2]], [[sympy.sqrt(k / m)]], [[1]])
     derived = plant.derive()
     assert derived.characteristic_polynomial.expression == "s + 1"
     numerator = derived.channels[0].numerator.sympy() / derived.channels[0].denominator.sympy()

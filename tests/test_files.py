@@ -9,9 +9,15 @@ from pathlib import Path
 
 import pytest
 
-from symplant.writing import files
-from symplant.writing.files import require_file_target, require_folder_target, settle, staged_folder, write_whole
 from symplant.errors import InputError
+from symplant.writing import files
+from symplant.writing.files import (
+    require_file_target,
+    require_folder_target,
+    settle,
+    staged_folder,
+    write_whole,
+)
 
 PROGRAM = Path(__file__).with_name("supervised_jobs.py")
 

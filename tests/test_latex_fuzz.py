@@ -132,9 +132,7 @@ class Writer:
         for factor in node.factors[1:]:
             following = self.factor(factor)
             # Without a sign only where nothing can be taken for an argument, a mixed number or one number.
-            safe = isinstance(factor, Name | Call) or (
-                isinstance(factor, Power) and raised_bare(factor.base)
-            )
+            safe = isinstance(factor, Name | Call) or (isinstance(factor, Power) and raised_bare(factor.base))
             sign = self.rng.choice([r"\cdot ", r"\times ", "*", "·", r" \cdot "])
             text += self.gap() if safe and self.rng.random() < 0.7 else self.space() + sign + self.space()
             text += following

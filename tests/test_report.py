@@ -95,7 +95,10 @@ def test_spellings_of_the_user_are_printed():
 
 def test_a_failed_check_is_said_first(tmp_path):
     derived = derive_and_check(read_plant_file(EXAMPLES[0]))
-    checks = (replace(derived.checks[0], verdict=Verdict.REFUTED, detail="at k = 1: 2, 3"), *derived.checks[1:])
+    checks = (
+        replace(derived.checks[0], verdict=Verdict.REFUTED, detail="at k = 1: 2, 3"),
+        *derived.checks[1:],
+    )
     finding = stability(derived.derivation)
     report = compose_report(derived.derivation, derived.substitution, finding, checks)
     assert not report.passed
