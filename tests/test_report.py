@@ -135,3 +135,17 @@ def test_the_fingerprint_follows_the_plant():
     one = fingerprint(read_plant_text(text))
     assert one == fingerprint(read_plant_text(text + "\n# a comment\n"))
     assert one != fingerprint(read_plant_text(text.replace('["k", "-(a + b)"', '["k", "-(a - b)"')))
+
+
+def test_multipliers_and_assumptions_are_read_back_too():
+    from symplant.derivation.derive import derive
+    from symplant.writing.printing import Printer
+    from symplant.writing.report_results import assumptions, characteristic
+
+    text = NASTY.replace("-K_t*exp(-e)/m", "-sqrt(u)/m").replace("[parameters]", "[parameters]\nu = {}")
+    derivation = derive(read_plant_text(text))
+    printer = Printer(derivation.model, derivation.ring)
+    characteristic(derivation, printer)
+    assumptions(derivation, printer)
+    assert {"multiplier", "assumed for real values"} <= {printed.what for printed in printer.printed}
+    assert composed(derivation.model).passed

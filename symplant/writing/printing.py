@@ -98,8 +98,16 @@ class Printer:
         value = setting.converter().convert(node)
         self.printed.append(Printed(what, latex, setting.ring, value.numerator, value.denominator))
 
+    def quotient(self, what: str, numerator: Element, denominator: Element) -> str:
+        """A quotient for running text; without a denominator, factored."""
+        if denominator.is_one():
+            return self.inline(what, numerator)
+        text = self.formulas.ratio_latex(numerator, denominator)
+        self.printed.append(Printed(what, text, self.ring, numerator, denominator))
+        return text
+
     def entry(self, what: str, tree: Node, value: Ratio) -> str:
-        """An entry of a matrix as it was given; `value` is what the tree amounts to."""
+        """A tree as it was given, an entry of a matrix say; `value` is what it amounts to."""
         text = self.formulas.writer.text(tree)
         self.printed.append(Printed(what, text, self.ring, value.numerator, value.denominator))
         return text

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from symplant.writing.latex_tree import node_latex
 from symplant.writing.tex_text import tex_text
 
 if TYPE_CHECKING:
@@ -107,11 +106,9 @@ def _multiplied(printer: Printer, name: str, determinant: str, scaled: Scaled) -
         return rf"Here ${name} = {determinant}$."
     if bottom.is_one() and (-top).is_one():
         return rf"Here ${name} = -{determinant}$."
-    factor = printer.formulas.ratio_latex(top, bottom)
-    if bottom.is_one():
-        factor = printer.formulas.factored_latex(top)
-        if len(top) > 1 and not factor.endswith(r"\right)"):
-            factor = rf"\left({factor}\right)"
+    factor = printer.quotient("multiplier", top, bottom)
+    if bottom.is_one() and len(top) > 1 and not factor.endswith(r"\right)"):
+        factor = rf"\left({factor}\right)"
     return rf"Here ${name} = {factor} \cdot {determinant}$."
 
 
@@ -127,9 +124,11 @@ def assumptions(derivation: Derivation, printer: Printer) -> str:
         )
     else:
         parts.append("No entry of the matrices is divided by a parameter.")
+    converter = derivation.pencil.setting.converter()
     for tree, relation in derivation.pencil.setting.domain:
         sign = r"\ge" if relation == ">=" else relation
-        parts.append(rf"For real values ${node_latex(tree, printer.spelling)} {sign} 0$ is taken to hold.")
+        formula = printer.entry("assumed for real values", tree, converter.convert(tree))
+        parts.append(rf"For real values ${formula} {sign} 0$ is taken to hold.")
     if derivation.ring.undecidable:
         parts.append(
             f"Equality of expressions is not fully decided here: {tex_text(derivation.ring.undecidable)}."
